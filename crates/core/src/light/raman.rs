@@ -1,0 +1,264 @@
+//! The geometry of the light that links internal states.
+//!
+//! A two-photon link absorbs from one beam and emits into the other, and kicks
+//! the atom by k_absorb - k_emit; a single-photon (clock) link absorbs only.
+
+use serde::{Deserialize, Serialize};
+
+use crate::degrees::{cos_deg, sin_deg};
+use crate::error::{Error, check_format};
+use crate::limits;
+use crate::vector::{self, dot};
+
+/// Two beams of one wavelength crossing at a full angle.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Crossing {
+    /// Vacuum wavelength of both beams.
+    pub wavelength_nm: f64,
+    /// Full angle between the beams: 0 co-propagating, 180 counter-propagating.
+    pub angle_deg: f64,
+    /// Angle between the difference of the wave vectors and the lattice axis.
+    pub tilt_deg: f64,
+}
+
+/// Beams given by their directions; only the directions of the vectors count.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Directions {
+    /// Direction of the beam that a photon is absorbed from.
+    pub absorb: [f64; 3],
+    /// Its vacuum wavelength.
+    pub absorb_wavelength_nm: f64,
+    /// Direction of the beam that a photon is emitted into; none for a single-photon link.
+    pub emit: Option<[f64; 3]>,
+    /// Its vacuum wavelength; if not given, that of the other beam.
+    pub emit_wavelength_nm: Option<f64>,
+}
+
+/// The light of one link: where photons are absorbed from and emitted into.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+#[serde(try_from = "RawPair", into = "RawPair")]
+pub struct RamanPair {
+    form: Form,
+    swapped: bool,
+}
+
+#[derive(Debug, Clone, Copy, PartialEq)]
+enum Form {
+    Crossing(Crossing),
+    Directions(Directions),
+}
+
+const FORMAT: &str = "fluxloom-raman-pair";
+
+#[derive(Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawPair {
+    format: String,
+    version: u32,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    wavelength_nm: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    angle_deg: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    tilt_deg: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    absorb: Option<[f64; 3]>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    absorb_wavelength_nm: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    emit: Option<[f64; 3]>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    emit_wavelength_nm: Option<f64>,
+    swapped: bool,
+}
+
+impl TryFrom<RawPair> for RamanPair {
+    type Error = Error;
+
+    fn try_from(raw: RawPair) -> Result<Self, Error> {
+        check_format(FORMAT, &raw.format, raw.version)?;
+        let pair = match raw {
+            RawPair {
+                wavelength_nm: Some(wavelength_nm),
+                angle_deg: Some(angle_deg),
+                tilt_deg: Some(tilt_deg),
+                absorb: None,
+                absorb_wavelength_nm: None,
+                emit: None,
+                emit_wavelength_nm: None,
+                ..
+            } => Self::crossing(Crossing { wavelength_nm, angle_deg, tilt_deg })?,
+            RawPair {
+                absorb: Some(absorb),
+                absorb_wavelength_nm: Some(absorb_wavelength_nm),
+                emit,
+                emit_wavelength_nm,
+                wavelength_nm: None,
+                angle_deg: None,
+                tilt_deg: None,
+                ..
+            } => Self::from_directions(Directions {
+                absorb,
+                absorb_wavelength_nm,
+                emit,
+                emit_wavelength_nm,
+            })?,
+            _ => {
+                return Err(Error::Contradiction {
+                    code: "raman.mixed_forms",
+                    message: "a Raman pair is either wavelength_nm, angle_deg and tilt_deg, or \
+                              absorb and absorb_wavelength_nm with emit and emit_wavelength_nm"
+                        .to_owned(),
+                });
+            }
+        };
+        Ok(Self { swapped: raw.swapped, ..pair })
+    }
+}
+
+impl From<RamanPair> for RawPair {
+    fn from(pair: RamanPair) -> Self {
+        let crossing = pair.as_crossing();
+        let directions = pair.as_directions();
+        Self {
+            format: FORMAT.to_owned(),
+            version: 1,
+            wavelength_nm: crossing.map(|c| c.wavelength_nm),
+            angle_deg: crossing.map(|c| c.angle_deg),
+            tilt_deg: crossing.map(|c| c.tilt_deg),
+            absorb: directions.map(|d| d.absorb),
+            absorb_wavelength_nm: directions.map(|d| d.absorb_wavelength_nm),
+            emit: directions.and_then(|d| d.emit),
+            emit_wavelength_nm: directions.and_then(|d| d.emit_wavelength_nm),
+            swapped: pair.swapped,
+        }
+    }
+}
+
+impl RamanPair {
+    /// Two beams of one wavelength, by their crossing angle.
+    ///
+    /// # Errors
+    /// [`Error::OutOfRange`] for wavelength, angle or tilt.
+    pub fn crossing(crossing: Crossing) -> Result<Self, Error> {
+        limits::WAVELENGTH_NM.check(crossing.wavelength_nm)?;
+        limits::RAMAN_ANGLE_DEG.check(crossing.angle_deg)?;
+        limits::TILT_DEG.check(crossing.tilt_deg)?;
+        Ok(Self { form: Form::Crossing(crossing), swapped: false })
+    }
+
+    /// Beams by their directions; without `emit` a single-photon link.
+    ///
+    /// # Errors
+    /// [`Error::OutOfRange`] for a wavelength, [`Error::NoDirection`] for a
+    /// vector, [`Error::Contradiction`] for a wavelength of a beam that is not there.
+    pub fn from_directions(directions: Directions) -> Result<Self, Error> {
+        vector::unit(directions.absorb, "absorb")?;
+        limits::WAVELENGTH_NM.check_as(directions.absorb_wavelength_nm, "absorb_wavelength_nm")?;
+        if let Some(emit) = directions.emit {
+            vector::unit(emit, "emit")?;
+        }
+        if let Some(wavelength_nm) = directions.emit_wavelength_nm {
+            limits::WAVELENGTH_NM.check_as(wavelength_nm, "emit_wavelength_nm")?;
+            if directions.emit.is_none() {
+                return Err(Error::Contradiction {
+                    code: "raman.no_emit_direction",
+                    message: format!(
+                        "emit_wavelength_nm = {wavelength_nm} is given without emit: give the \
+                         direction of that beam, or leave both out for a single-photon link"
+                    ),
+                });
+            }
+        }
+        Ok(Self { form: Form::Directions(directions), swapped: false })
+    }
+
+    /// The same beams with the roles of absorption and emission exchanged: the
+    /// flux changes its sign, exactly.
+    #[must_use]
+    pub fn swapped(&self) -> Self {
+        Self { swapped: !self.swapped, ..*self }
+    }
+
+    /// Whether the roles are exchanged with respect to the numbers given.
+    #[must_use]
+    pub fn roles_swapped(&self) -> bool {
+        self.swapped
+    }
+
+    /// The crossing angle form, if the pair was given so.
+    #[must_use]
+    pub fn as_crossing(&self) -> Option<Crossing> {
+        match self.form {
+            Form::Crossing(crossing) => Some(crossing),
+            Form::Directions(_) => None,
+        }
+    }
+
+    /// The form by directions, if the pair was given so.
+    #[must_use]
+    pub fn as_directions(&self) -> Option<Directions> {
+        match self.form {
+            Form::Crossing(_) => None,
+            Form::Directions(directions) => Some(directions),
+        }
+    }
+
+    /// Wavelength of the light: that of the absorbed beam where there are two.
+    #[must_use]
+    pub fn leading_wavelength_nm(&self) -> f64 {
+        match self.form {
+            Form::Crossing(crossing) => crossing.wavelength_nm,
+            Form::Directions(directions) => directions.absorb_wavelength_nm,
+        }
+    }
+
+    /// The component of the kick along a unit vector, over 2 pi: wave numbers
+    /// per nanometre. For a crossing pair the axis is already in its tilt.
+    #[must_use]
+    pub fn wavenumber_along_per_nm(&self, axis: [f64; 3]) -> f64 {
+        let wavenumber = match self.form {
+            Form::Crossing(Crossing { wavelength_nm, angle_deg, tilt_deg }) => {
+                2.0 * sin_deg(0.5 * angle_deg) * cos_deg(tilt_deg) / wavelength_nm
+            }
+            Form::Directions(directions) => {
+                let along = |vector: [f64; 3], wavelength_nm: f64| {
+                    vector::unit(vector, "direction").map_or(0.0, |unit| dot(unit, axis))
+                        / wavelength_nm
+                };
+                let absorb_nm = directions.absorb_wavelength_nm;
+                let emit_nm = directions.emit_wavelength_nm.unwrap_or(absorb_nm);
+                along(directions.absorb, absorb_nm)
+                    - directions.emit.map_or(0.0, |emit| along(emit, emit_nm))
+            }
+        };
+        if self.swapped { -wavenumber } else { wavenumber }
+    }
+
+    /// The same beams crossing at another angle; none for beams given by directions
+    /// or an angle outside 0..180.
+    #[must_use]
+    pub fn with_angle_deg(&self, angle_deg: f64) -> Option<Self> {
+        let crossing = Crossing { angle_deg, ..self.as_crossing()? };
+        Self::crossing(crossing).ok().map(|pair| Self { swapped: self.swapped, ..pair })
+    }
+
+    /// The same geometry with all wavelengths multiplied by a factor.
+    ///
+    /// # Errors
+    /// [`Error::OutOfRange`] if a wavelength leaves its range.
+    pub fn scaled_wavelength(&self, factor: f64) -> Result<Self, Error> {
+        let pair = match self.form {
+            Form::Crossing(crossing) => Self::crossing(Crossing {
+                wavelength_nm: crossing.wavelength_nm * factor,
+                ..crossing
+            })?,
+            Form::Directions(directions) => Self::from_directions(Directions {
+                absorb_wavelength_nm: directions.absorb_wavelength_nm * factor,
+                emit_wavelength_nm: directions.emit_wavelength_nm.map(|w| w * factor),
+                ..directions
+            })?,
+        };
+        Ok(Self { swapped: self.swapped, ..pair })
+    }
+}
