@@ -1,0 +1,18 @@
+//! Files that people write by hand: a tree of values with their lines, faults
+//! that are collected rather than thrown, and writing that never leaves half a
+//! file behind.
+//!
+//! Nothing here knows what a key means; [`crate::apparatus`] does.
+
+mod disk;
+mod faults;
+mod json;
+mod node;
+pub mod path;
+mod toml;
+
+pub use disk::{MOST_BYTES, name_of, read_text, write_atomically};
+pub use faults::{Faults, Lines, nearest};
+pub use json::read_json;
+pub use node::{Data, Entry, Node};
+pub use toml::read_toml;
