@@ -1,0 +1,237 @@
+//! `Atom` and the table of where its numbers come from.
+
+use fluxloom_core::Atom;
+use fluxloom_core::atom::DataSource;
+use pyo3::prelude::*;
+use pyo3::types::{PyDict, PyTuple};
+
+use crate::convert::{Numbers, number, numbers, shaped};
+use crate::documents::document;
+use crate::errors::{raise_core, wrong_type};
+
+/// An isotope with its embedded data.
+///
+/// Parameters
+/// ----------
+/// name : str
+///     Such as ``"40K"``; see ``Atom.available()``.
+///
+/// Raises
+/// ------
+/// InputError
+///     ``atom.unknown``, with the name that was probably meant.
+///
+/// Examples
+/// --------
+/// >>> import fluxloom as fl
+/// >>> potassium = fl.Atom("40K")
+/// >>> potassium.manifolds
+/// (4.5, 3.5)
+/// >>> round(potassium.recoil_hz(1064.0), 2)
+/// 4409.86
+#[pyclass(frozen, eq, module = "fluxloom", name = "Atom")]
+#[derive(PartialEq)]
+pub struct PyAtom {
+    pub inner: Atom,
+}
+
+document!(PyAtom);
+
+#[pymethods]
+impl PyAtom {
+    #[new]
+    fn new(name: &Bound<'_, PyAny>) -> PyResult<Self> {
+        let py = name.py();
+        let text: String = name.extract().map_err(|_| wrong_type("name", name, "a text"))?;
+        Ok(Self { inner: Atom::new(&text).map_err(|error| raise_core(py, error))? })
+    }
+
+    /// Names of all isotopes of the table, by mass number.
+    #[staticmethod]
+    fn available(py: Python<'_>) -> PyResult<Bound<'_, PyTuple>> {
+        PyTuple::new(py, Atom::available())
+    }
+
+    /// Name of the isotope.
+    #[getter]
+    fn name(&self) -> &'static str {
+        self.inner.name()
+    }
+
+    /// Mass in kilograms (AME2020).
+    #[getter]
+    fn mass_kg(&self) -> f64 {
+        self.inner.mass_kg()
+    }
+
+    /// Nuclear spin I.
+    #[getter]
+    fn nuclear_spin(&self) -> f64 {
+        self.inner.nuclear_spin()
+    }
+
+    /// ``"boson"`` or ``"fermion"``.
+    #[getter]
+    fn statistics(&self) -> &'static str {
+        self.inner.statistics().as_str()
+    }
+
+    /// Total angular momenta F of the ground manifold, largest first.
+    #[getter]
+    fn manifolds<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
+        PyTuple::new(py, self.inner.manifolds())
+    }
+
+    /// Recoil energy of one photon over h, h/(2 m lambda^2), in hertz.
+    ///
+    /// Takes a wavelength or an array of wavelengths in nanometres.
+    fn recoil_hz<'py>(&self, wavelength_nm: &Bound<'py, PyAny>) -> PyResult<Bound<'py, PyAny>> {
+        self.each(wavelength_nm, |nm| self.inner.recoil_hz(nm))
+    }
+
+    /// Recoil velocity of one photon, h/(m lambda), in metres per second.
+    ///
+    /// Takes a wavelength or an array of wavelengths in nanometres.
+    fn recoil_m_per_s<'py>(
+        &self,
+        wavelength_nm: &Bound<'py, PyAny>,
+    ) -> PyResult<Bound<'py, PyAny>> {
+        self.each(wavelength_nm, |nm| self.inner.recoil_m_per_s(nm))
+    }
+
+    /// Every number behind this atom, with uncertainty, unit, status and source.
+    fn sources(&self) -> PySourceTable {
+        PySourceTable { rows: self.inner.sources() }
+    }
+
+    /// The same atom with own numbers; what follows from them follows.
+    ///
+    /// Parameters
+    /// ----------
+    /// numbers : dict
+    ///     Values by their name in ``sources()``, such as ``{"D1.dipole_au": 4.1075}``.
+    /// source : str
+    ///     Where the numbers come from; shows in every result's sources.
+    #[pyo3(signature = (numbers, *, source))]
+    fn with_data(&self, numbers: &Bound<'_, PyDict>, source: &str) -> PyResult<Self> {
+        let mut changes = Vec::with_capacity(numbers.len());
+        for (key, value) in numbers {
+            let key: String = key.extract().map_err(|_| wrong_type("numbers", &key, "texts"))?;
+            let value = number(&value, &key)?;
+            changes.push((key, value));
+        }
+        let inner = self.inner.with_data(&changes, source);
+        Ok(Self { inner: inner.map_err(|error| raise_core(numbers.py(), error))? })
+    }
+
+    fn __repr__(&self) -> String {
+        let own: Vec<_> = self.inner.own_data().collect();
+        let mut text = format!("Atom({:?})", self.inner.name());
+        for (key, value, source) in own {
+            text += &format!(".with_data({{{key:?}: {value:?}}}, source={source:?})");
+        }
+        text
+    }
+}
+
+impl PyAtom {
+    fn each<'py>(
+        &self,
+        values: &Bound<'py, PyAny>,
+        quantity: impl Fn(f64) -> Result<f64, fluxloom_core::Error>,
+    ) -> PyResult<Bound<'py, PyAny>> {
+        let py = values.py();
+        let Numbers { shape, values } = numbers(values, "wavelength_nm")?;
+        let found: Result<Vec<f64>, _> = values.into_iter().map(quantity).collect();
+        shaped(py, &shape, found.map_err(|error| raise_core(py, error))?)
+    }
+}
+
+/// One number of the atomic table.
+#[pyclass(frozen, eq, module = "fluxloom", name = "DataSource")]
+#[derive(PartialEq, Clone)]
+pub struct PyDataSource {
+    inner: DataSource,
+}
+
+#[pymethods]
+impl PyDataSource {
+    /// Name of the number, such as ``D1.dipole_au``.
+    #[getter]
+    fn name(&self) -> &str {
+        &self.inner.name
+    }
+
+    /// Its value.
+    #[getter]
+    fn value(&self) -> f64 {
+        self.inner.value
+    }
+
+    /// Its standard uncertainty, or None.
+    #[getter]
+    fn uncertainty(&self) -> Option<f64> {
+        self.inner.uncertainty
+    }
+
+    /// Its unit.
+    #[getter]
+    fn unit(&self) -> &str {
+        self.inner.unit
+    }
+
+    /// How far it has been confirmed.
+    #[getter]
+    fn status(&self) -> &'static str {
+        self.inner.status.as_str()
+    }
+
+    /// Where it comes from.
+    #[getter]
+    fn source(&self) -> &str {
+        &self.inner.source
+    }
+
+    fn __repr__(&self) -> String {
+        let DataSource { name, value, uncertainty, unit, status, source } = &self.inner;
+        let spread = uncertainty.map_or_else(String::new, |u| format!(" +- {u:?}"));
+        format!("<{name} = {value:?}{spread} {unit}, {}: {source}>", status.as_str())
+    }
+}
+
+/// The numbers of an atom: a sequence of rows with name, value, uncertainty,
+/// unit, status and source.
+#[pyclass(frozen, eq, module = "fluxloom", name = "SourceTable", sequence)]
+#[derive(PartialEq)]
+pub struct PySourceTable {
+    rows: Vec<DataSource>,
+}
+
+#[pymethods]
+impl PySourceTable {
+    fn __len__(&self) -> usize {
+        self.rows.len()
+    }
+
+    fn __getitem__(&self, index: isize) -> PyResult<PyDataSource> {
+        let place = if index < 0 { index + self.rows.len().cast_signed() } else { index };
+        usize::try_from(place)
+            .ok()
+            .and_then(|place| self.rows.get(place))
+            .map(|row| PyDataSource { inner: row.clone() })
+            .ok_or_else(|| pyo3::exceptions::PyIndexError::new_err("row out of range"))
+    }
+
+    /// The table as a pandas DataFrame, one row per number.
+    fn to_pandas<'py>(slf: &Bound<'py, Self>) -> PyResult<Bound<'py, PyAny>> {
+        crate::display(slf.py(), "sources_to_pandas")?.call1((slf,))
+    }
+
+    fn _repr_html_<'py>(slf: &Bound<'py, Self>) -> PyResult<Bound<'py, PyAny>> {
+        crate::display(slf.py(), "sources_html")?.call1((slf,))
+    }
+
+    fn __repr__(&self) -> String {
+        format!("<SourceTable of {} numbers>", self.rows.len())
+    }
+}
