@@ -47,9 +47,7 @@ def main():
     document = {
         "source": f"scipy {scipy.__version__}: special.mathieu_a/b, linalg.eigvalsh",
         "made_by": "make_band_energies.py",
-        "cases": [
-            {"depth_er": d, "quasimomentum": q, "energies_er": e} for d, q, e in cases
-        ],
+        "cases": [{"depth_er": d, "quasimomentum": q, "energies_er": e} for d, q, e in cases],
     }
     path = pathlib.Path(__file__).with_name("band_energies.json")
     path.write_text(json.dumps(document, indent=1) + "\n", encoding="utf-8")

@@ -1,8 +1,7 @@
 #!/usr/bin/env python3
 """Write masses.json: masses of isotopes as a general periodic-table package has them.
 
-    python -m venv /tmp/venv && /tmp/venv/bin/pip install mendeleev==1.3.0
-    /tmp/venv/bin/python make_masses.py masses.json
+Run:  make reference
 
 The tests of the embedded atomic table compare with it.
 """

@@ -2,6 +2,7 @@
 
 use fluxloom_core::fault::Fault;
 use fluxloom_plan::apparatus::Measured;
+use fluxloom_plan::cautions::Caution;
 use fluxloom_plan::files::{Data, Entry, Node};
 use fluxloom_plan::{Apparatus, Error};
 use pyo3::prelude::*;
@@ -117,6 +118,23 @@ impl PyApparatus {
         PyTuple::new(py, self.inner.changes())
     }
 
+    /// Settings that the file leaves to their documented defaults: path to
+    /// value and reason.
+    fn defaults<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyDict>> {
+        let table = PyDict::new(py);
+        for (path, value, reason) in self.inner.defaults() {
+            table.set_item(path, (python_value(py, &value)?, reason))?;
+        }
+        Ok(table)
+    }
+
+    /// What in this laboratory can hurt someone, each with ``.code`` and ``.text``.
+    #[getter]
+    fn cautions<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
+        let cautions = self.inner.cautions().map_err(|error| raise(py, &error))?;
+        PyTuple::new(py, cautions.into_iter().map(|inner| PyCaution { inner }).collect::<Vec<_>>())
+    }
+
     /// The atom of the cloud.
     fn atom(&self, py: Python<'_>) -> PyResult<PyAtom> {
         Ok(PyAtom { inner: self.inner.atom().map_err(|error| raise(py, &error))? })
@@ -205,6 +223,36 @@ impl PyMeasured {
         let spread =
             self.inner.standard_error.map_or_else(String::new, |error| format!(" +- {error:?}"));
         format!("<Measured {:?}{spread}>", self.inner.value)
+    }
+}
+
+/// A hazard in words; ``str(caution)`` is the text.
+#[pyclass(frozen, eq, module = "fluxloom", name = "Caution")]
+#[derive(PartialEq)]
+pub struct PyCaution {
+    inner: Caution,
+}
+
+#[pymethods]
+impl PyCaution {
+    /// Stable code.
+    #[getter]
+    fn code(&self) -> &'static str {
+        self.inner.code
+    }
+
+    /// What, from which settings, and whom to ask.
+    #[getter]
+    fn text(&self) -> &str {
+        &self.inner.text
+    }
+
+    fn __str__(&self) -> &str {
+        &self.inner.text
+    }
+
+    fn __repr__(&self) -> String {
+        format!("<Caution {}>", self.inner.code)
     }
 }
 

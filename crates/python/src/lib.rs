@@ -68,7 +68,7 @@ fn limits() -> Vec<(&'static str, &'static str, f64, f64, bool, &'static str)> {
 #[pymodule]
 mod _core {
     #[pymodule_export]
-    use super::apparatus::{PyApparatus, PyMeasured};
+    use super::apparatus::{PyApparatus, PyCaution, PyMeasured};
     #[pymodule_export]
     use super::atom::{PyAtom, PyDataSource, PySourceTable};
     #[pymodule_export]

@@ -101,7 +101,7 @@ fn all_faults_of_a_change_come_at_once() {
             ("lasers.ramen.wavelength_nm", json!(770.0)),
             ("trap.along_hz", json!(null)),
             ("cloud.count", json!(true)),
-            ("field.magnitude_gauss", json!(500.0)),
+            ("field.magnitude_gauss", json!(5000.0)),
             ("raman", json!({"beams": ["raman_a", "raman_b"]})),
             ("raman.tilt_deg", json!(0.1)),
             ("cloud.start", json!("1,0")),
@@ -117,10 +117,10 @@ fn all_faults_of_a_change_come_at_once() {
         [
             ("apparatus.overlapping_changes", "raman.tilt_deg"),
             ("apparatus.unknown_path", "lasers.ramen.wavelength_nm"),
+            ("field.magnitude_out_of_range", "field.magnitude_gauss"),
             ("file.bad_state", "cloud.start"),
             ("file.missing_key", "raman.angle_deg"),
             ("file.null", "trap.along_hz"),
-            ("file.value_outside_range", "field.magnitude_gauss"),
             ("file.wrong_type", "cloud.count"),
         ]
     );
