@@ -21,7 +21,7 @@ fn hop(reach: i32, band: usize) -> Hop {
 fn harmonic_overlap(depth_er: f64) -> f64 {
     let lattice = lattice(depth_er);
     let input = WannierInput { band: 0, points_per_site: 64, sites: 16 };
-    let wannier = lattice.wannier(input).unwrap();
+    let wannier = lattice.wannier(input, &Unwatched).unwrap();
     // V = s z^2 near the site, z = pi x/a: exp(-sqrt(s) z^2/2), normalised in z.
     let scale = std::f64::consts::PI / lattice.spacing_nm();
     let norm = (depth_er.sqrt() / std::f64::consts::PI).powf(0.25) * scale.sqrt();
@@ -50,7 +50,7 @@ fn table_of_tunnelling_and_widths() {
         let lattice = lattice(depth_er);
         let t1 = lattice.tunnelling_er(hop(1, 0)).unwrap();
         let t2 = lattice.tunnelling_er(hop(2, 0)).unwrap();
-        let bands = lattice.bands(BandsInput::default()).unwrap();
+        let bands = lattice.bands(BandsInput::default(), &Unwatched).unwrap();
         assert_near(4.0 * t1, four_t, 0.6e-6, "4t");
         assert_near(bands.width_er(0).unwrap(), width, 0.6e-6, "width");
         assert!(t2 < 0.0, "t2 = {t2}");
@@ -63,13 +63,13 @@ fn table_of_tunnelling_and_widths() {
 fn independent_values_at_ten_recoils() {
     // source: computed independently of this project (numpy and mpmath), no publication.
     let lattice = lattice(10.0);
-    let bands = lattice.bands(BandsInput::default()).unwrap();
+    let bands = lattice.bands(BandsInput::default(), &Unwatched).unwrap();
     assert_near(lattice.tunnelling_er(hop(1, 0)).unwrap(), 0.019_182_452_147_2, 1e-13, "t1");
     assert_near(lattice.tunnelling_er(hop(3, 0)).unwrap(), 4.254_522_984_77e-6, 1e-16, "t3");
     assert_near(bands.gap_er(0, Some(1.0)).unwrap(), 4.572_262_252_28, 2e-11, "gap at q = 1");
     assert_near(bands.gap_er(0, Some(0.0)).unwrap(), 5.645_552_708_78, 2e-11, "gap at q = 0");
     assert_near(bands.gap_er(0, None).unwrap(), 4.572_262_252_28, 2e-11, "smallest gap");
-    assert_near(lattice.onsite_integral(0).unwrap(), 0.647_880_771_371, 1e-11, "w^4");
+    assert_near(lattice.onsite_integral(0, &Unwatched).unwrap(), 0.647_880_771_371, 1e-11, "w^4");
     let overlap =
         |kick, reach| lattice.kick_overlap(kick, Transfer { reach, ..Transfer::ON_SITE }).unwrap();
     assert_near(overlap(0.5, 0), 0.975_563_077_2, 1e-10, "O_0(0.5)");
@@ -83,8 +83,11 @@ fn overlaps_are_sums_over_the_tabulated_functions() {
     for (depth_er, kick) in [(1.5, 0.9), (6.0, 0.75), (12.0, 2.7673), (30.0, 4.1)] {
         let lattice = lattice(depth_er);
         let k_l = std::f64::consts::PI / lattice.spacing_nm();
-        let table =
-            |band| lattice.wannier(WannierInput { band, points_per_site: 64, sites: 48 }).unwrap();
+        let table = |band| {
+            lattice
+                .wannier(WannierInput { band, points_per_site: 64, sites: 48 }, &Unwatched)
+                .unwrap()
+        };
         let zero = table(0);
         let step = zero.x_nm[1] - zero.x_nm[0];
         for reach in [0_i32, 1, 2] {
@@ -126,7 +129,7 @@ fn overlaps_are_sums_over_the_tabulated_functions() {
 fn wannier_functions_are_orthonormal_and_decay() {
     for (depth_er, band) in [(2.0, 0), (6.0, 0), (10.0, 1), (25.0, 2), (50.0, 3)] {
         let input = WannierInput { band, points_per_site: 32, sites: 60 };
-        let wannier = lattice(depth_er).wannier(input).unwrap();
+        let wannier = lattice(depth_er).wannier(input, &Unwatched).unwrap();
         let w = &wannier.amplitude;
         let step = wannier.x_nm[1] - wannier.x_nm[0];
         for reach in 0..4 {
@@ -159,7 +162,7 @@ fn signs_of_tunnelling_alternate_between_bands() {
     assert!(lattice.tunnelling_er(hop(1, 1)).unwrap() < 0.0);
     assert!(lattice.tunnelling_er(hop(1, 2)).unwrap() > 0.0);
     let mean = -lattice.tunnelling_er(hop(0, 0)).unwrap();
-    let bands = lattice.bands(BandsInput { count: 1, points: 3 }).unwrap();
+    let bands = lattice.bands(BandsInput { count: 1, points: 3 }, &Unwatched).unwrap();
     let (edge, centre) = (bands.energies_er()[[0, 0]], bands.energies_er()[[0, 1]]);
     assert!(centre < mean && mean < edge);
 }
@@ -251,7 +254,7 @@ fn hopeless_questions_are_refused() {
     let grid = BandGrid { depths_er: &[6.0, f64::NAN], quasimomenta: &[0.0], count: 4 };
     let error = band_energies_er(grid, &Unwatched).unwrap_err();
     assert!(error.to_string().starts_with("depths_er[1] = NaN"), "{error}");
-    let bands = lattice(6.0).bands(BandsInput { count: 2, points: 5 }).unwrap();
+    let bands = lattice(6.0).bands(BandsInput { count: 2, points: 5 }, &Unwatched).unwrap();
     assert!(bands.width_er(2).is_err());
 }
 

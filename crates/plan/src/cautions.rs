@@ -99,7 +99,8 @@ impl Apparatus {
     fn strong_field(&self) -> Option<Caution> {
         let field = |path: &str| self.number(path).ok();
         let range = self.range("field.range_gauss").ok().flatten().map(|(_, high)| high);
-        let most = [field("field.magnitude_gauss"), range].into_iter().flatten().fold(0.0, f64::max);
+        let most =
+            [field("field.magnitude_gauss"), range].into_iter().flatten().fold(0.0, f64::max);
         (most > STRONG_FIELD_GAUSS).then(|| Caution {
             code: "caution.magnet",
             text: format!(
@@ -138,7 +139,8 @@ mod tests {
     #[test]
     fn a_setting_outside_its_range_is_mentioned() {
         let text = apparatus(1.0, 532.0).to_toml();
-        let text = text.replace("wavelength_nm = 532.0", "wavelength_nm = 532.0\nrange_nm = [600, 700]");
+        let text =
+            text.replace("wavelength_nm = 532.0", "wavelength_nm = 532.0\nrange_nm = [600, 700]");
         let cautions = Apparatus::from_toml(&text).unwrap().cautions().unwrap();
         assert_eq!(cautions[0].code, "caution.outside_range");
         assert!(cautions[0].text.starts_with("lasers.one.wavelength_nm = 532 stands outside"));

@@ -175,3 +175,16 @@ proptest! {
         }
     }
 }
+
+#[test]
+fn public_types_cross_threads() {
+    fn shared<T: Send + Sync>() -> usize {
+        std::mem::size_of::<T>()
+    }
+    let sizes = [
+        shared::<FluxCheck>(),
+        shared::<fluxloom_plan::Apparatus>(),
+        shared::<fluxloom_plan::Error>(),
+    ];
+    assert!(sizes.iter().all(|size| *size > 0));
+}

@@ -4,6 +4,7 @@
 //! as a number. Arrays come in as anything `numpy.asarray` takes and leave
 //! read-only.
 
+use fluxloom_core::control::allow_numbers;
 use fluxloom_core::limits::{self, Limit};
 use fluxloom_core::rational::{Flux, Fraction};
 use numpy::{IntoPyArray, PyArrayDyn, PyArrayMethods, PyReadonlyArrayDyn, ndarray::ArrayD};
@@ -151,6 +152,9 @@ pub struct Numbers {
     pub values: Vec<f64>,
 }
 
+/// What one number of an argument takes: itself, its fellows and its answer.
+const BYTES_PER_NUMBER: usize = 40;
+
 /// A single number or anything that `numpy.asarray` makes a real array of.
 pub fn numbers(value: &Bound<'_, PyAny>, field: &str) -> PyResult<Numbers> {
     if value.is_instance_of::<PyFloat>() || value.is_instance_of::<PyInt>() {
@@ -166,6 +170,9 @@ pub fn numbers(value: &Bound<'_, PyAny>, field: &str) -> PyResult<Numbers> {
     if !matches!(kind.as_str(), "i" | "u" | "f" | "O") {
         return Err(wrong_type(field, value, wanted));
     }
+    // Before anything is copied: a broadcast view may stand for far more than there is.
+    let size: usize = array.getattr("size")?.extract()?;
+    allow_numbers(&[size], BYTES_PER_NUMBER).map_err(|error| raise_core(py, error))?;
     let real = numpy
         .call_method1("asarray", (array, "float64"))
         .map_err(|_| wrong_type(field, value, wanted))?;

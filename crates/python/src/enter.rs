@@ -4,6 +4,7 @@
 //! Worker threads do not survive a `fork`. The pool remembers its process and
 //! is built anew in a child, so that a forked worker computes instead of hanging.
 
+use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{RecvTimeoutError, channel};
 use std::sync::{Arc, Mutex, PoisonError};
@@ -113,11 +114,15 @@ where
         (_, Some(interrupt)) => Err(interrupt),
         (Ok(Ok(answer)), None) => Ok(answer),
         (Ok(Err(error)), None) => Err(raise(py, &error.into())),
-        // A panic is a fault of ours; it must not pass `except Exception`.
-        (Err(_), None) => Err(PyRuntimeError::new_err(
-            "an internal computation failed; please report this with the input that led here",
-        )),
+        (Err(_), None) => Err(internal()),
     }
+}
+
+/// A panic is a fault of ours; as a plain exception it does not pass `except Exception`.
+fn internal() -> PyErr {
+    PyRuntimeError::new_err(
+        "an internal computation failed; please report this with the input that led here",
+    )
 }
 
 /// Runs short work with the GIL released.
@@ -127,5 +132,8 @@ where
     E: Into<Error> + Send,
     F: FnOnce() -> Result<T, E> + Send,
 {
-    py.detach(work).map_err(|error| raise(py, &error.into()))
+    match py.detach(|| catch_unwind(AssertUnwindSafe(work))) {
+        Ok(outcome) => outcome.map_err(|error| raise(py, &error.into())),
+        Err(_) => Err(internal()),
+    }
 }

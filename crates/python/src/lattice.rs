@@ -182,7 +182,7 @@ impl PyLattice {
         if let Some(value) = points {
             input.points = size(value, &limits::POINTS, "points")?;
         }
-        Ok(PyBands { inner: enter::long(py, |_| self.inner.bands(input))? })
+        Ok(PyBands { inner: enter::long(py, |control| self.inner.bands(input, control))? })
     }
 
     /// Effective mass over the atom's mass at q = 0, 2/E''(0); negative where
@@ -197,7 +197,7 @@ impl PyLattice {
     #[pyo3(signature = (*, band=None))]
     fn onsite_integral(&self, py: Python<'_>, band: Option<&Bound<'_, PyAny>>) -> PyResult<f64> {
         let band = self::band(band, "band")?;
-        enter::short(py, || self.inner.onsite_integral(band))
+        enter::long(py, |control| self.inner.onsite_integral(band, control))
     }
 
     /// The Wannier function of a band on a grid centred on its site: real, even
@@ -217,7 +217,7 @@ impl PyLattice {
         if let Some(value) = sites {
             input.sites = size(value, &limits::WANNIER_SITES, "sites")?;
         }
-        Ok(PyWannier { inner: enter::long(py, |_| self.inner.wannier(input))? })
+        Ok(PyWannier { inner: enter::long(py, |control| self.inner.wannier(input, control))? })
     }
 
     /// O_d: what a kick (in k_L; a number or an array) leaves between Wannier functions.

@@ -3,8 +3,9 @@
 use ndarray::Array2;
 use serde::{Deserialize, Serialize};
 
-use crate::control;
+use crate::control::{self, Control};
 use crate::error::Error;
+use crate::lattice::batch::solve;
 use crate::lattice::bloch::index;
 use crate::lattice::geometry::Lattice;
 use crate::lattice::tunnelling::Hop;
@@ -120,11 +121,13 @@ impl Lattice {
     /// The lowest bands over the zone.
     ///
     /// # Errors
-    /// [`Error::OutOfRange`] for count or points, [`Error::MemoryOverLimit`].
-    pub fn bands(&self, input: BandsInput) -> Result<Bands, Error> {
+    /// [`Error::OutOfRange`] for count or points, [`Error::MemoryOverLimit`],
+    /// [`Error::Cancelled`].
+    pub fn bands(&self, input: BandsInput, control: &dyn Control) -> Result<Bands, Error> {
         check_input(input)?;
         let quasimomenta = zone_edges_included(input.points);
-        let energies = self.energies_er(&quasimomenta, input.count);
+        let mut energies = vec![0.0; input.points * input.count];
+        solve(self.depth_er(), &quasimomenta, input.count, &mut energies, control)?;
         let energies_er = Array2::from_shape_fn((input.count, input.points), |(band, point)| {
             energies.get(point * input.count + band).copied().unwrap_or_default()
         });

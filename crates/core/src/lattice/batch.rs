@@ -36,8 +36,11 @@ const WORTH_INTERPOLATING: usize = 2 * NODES;
 /// Largest last Chebyshev coefficient of a converged half-octave, in lattice recoils.
 const CONVERGED_ER: f64 = 1e-11;
 
-/// Rows handled between two looks at the control.
+/// Rows that make one task for a thread.
 const ROWS_PER_TASK: usize = 64;
+
+/// Quasimomenta handled between two looks at the control: a few milliseconds.
+const POINTS_PER_STEP: usize = 4096;
 
 /// Depths and quasimomenta to combine, and how many bands from the lowest.
 #[derive(Debug, Clone, Copy)]
@@ -75,7 +78,7 @@ pub fn band_energies_er(grid: BandGrid<'_>, control: &dyn Control) -> Result<Arr
         control.progress(chunk * ROWS_PER_TASK, depths_er.len());
         let depths = depths_er.iter().skip(chunk * ROWS_PER_TASK);
         for (depth, row) in depths.zip(rows.chunks_mut(width)) {
-            halves.row(*depth, quasimomenta, count, row);
+            halves.row(*depth, &grid, row, control)?;
         }
         Ok(())
     };
@@ -141,9 +144,21 @@ fn node_depth(half_octave: i32, j: usize) -> f64 {
     centre + half_width * chebyshev_point(j)
 }
 
-fn solve(depth_er: f64, quasimomenta: &[f64], count: usize, row: &mut [f64]) {
+/// Energies of one depth, `[quasimomentum][band]`, looking at the control now and then.
+pub(super) fn solve(
+    depth_er: f64,
+    quasimomenta: &[f64],
+    count: usize,
+    row: &mut [f64],
+    control: &dyn Control,
+) -> Result<(), Error> {
     let kept = cutoff(depth_er, count, ENERGY_TRUNCATION_ER);
-    band_energies(depth_er, quasimomenta, count, kept, row);
+    let points = quasimomenta.chunks(POINTS_PER_STEP);
+    for (points, energies) in points.zip(row.chunks_mut(POINTS_PER_STEP * count)) {
+        control::go_on(control)?;
+        band_energies(depth_er, points, count, kept, energies);
+    }
+    Ok(())
 }
 
 impl HalfOctaves {
@@ -164,7 +179,7 @@ impl HalfOctaves {
             control::go_on(control)?;
             if let Some(half_octave) = worth.get(place / NODES) {
                 let depth = node_depth(*half_octave, place % NODES);
-                solve(depth, grid.quasimomenta, grid.count, row);
+                solve(depth, grid.quasimomenta, grid.count, row, control)?;
             }
             Ok(())
         })?;
@@ -177,11 +192,20 @@ impl HalfOctaves {
         Ok(Self { nodes })
     }
 
-    fn row(&self, depth_er: f64, quasimomenta: &[f64], count: usize, row: &mut [f64]) {
+    fn row(
+        &self,
+        depth_er: f64,
+        grid: &BandGrid<'_>,
+        row: &mut [f64],
+        control: &dyn Control,
+    ) -> Result<(), Error> {
         let half_octave = half_octave_of(depth_er);
         match self.nodes.get(&half_octave) {
-            Some(nodes) => combine_rows(&weights(half_octave, depth_er), nodes, row),
-            None => solve(depth_er, quasimomenta, count, row),
+            Some(nodes) => {
+                combine_rows(&weights(half_octave, depth_er), nodes, row);
+                Ok(())
+            }
+            None => solve(depth_er, grid.quasimomenta, grid.count, row, control),
         }
     }
 }

@@ -6,8 +6,9 @@
 
 use serde::{Deserialize, Serialize};
 
-use crate::control;
+use crate::control::{self, Control};
 use crate::error::Error;
+use crate::lattice::batch::for_each_chunk;
 use crate::lattice::bloch::{BlochState, bloch_states, index, zone, zone_points};
 use crate::lattice::geometry::Lattice;
 use crate::lattice::tunnelling::check_band;
@@ -42,28 +43,40 @@ pub struct Wannier {
     pub amplitude: Vec<f64>,
 }
 
+/// Positions handled between two looks at the control.
+const POSITIONS_PER_TASK: usize = 64;
+
 /// Values at positions in units of the spacing, normalised over one spacing.
-fn tabulate(states: &[BlochState], band: usize, positions: &[f64]) -> Vec<f64> {
+fn tabulate(
+    states: &[BlochState],
+    band: usize,
+    positions: &[f64],
+    control: &dyn Control,
+) -> Result<Vec<f64>, Error> {
     let weight = 1.0 / index(states.len());
     let wave = if band.is_multiple_of(2) { f64::cos } else { f64::sin };
-    positions
-        .iter()
-        .map(|x| {
+    let mut values = vec![0.0; positions.len()];
+    for_each_chunk(&mut values, POSITIONS_PER_TASK, |(task, values)| {
+        control::go_on(control)?;
+        for (value, x) in values.iter_mut().zip(positions.iter().skip(task * POSITIONS_PER_TASK)) {
             let phase = std::f64::consts::PI * x;
             let at = |state: &BlochState| -> f64 {
                 state.terms().map(|(p, a)| a * wave(p * phase)).sum()
             };
-            weight * states.iter().map(at).sum::<f64>()
-        })
-        .collect()
+            *value = weight * states.iter().map(at).sum::<f64>();
+        }
+        Ok(())
+    })?;
+    Ok(values)
 }
 
 impl Lattice {
     /// The Wannier function of a band.
     ///
     /// # Errors
-    /// [`Error::OutOfRange`] for band or grid, [`Error::NotLocalised`].
-    pub fn wannier(&self, input: WannierInput) -> Result<Wannier, Error> {
+    /// [`Error::OutOfRange`] for band or grid, [`Error::NotLocalised`],
+    /// [`Error::MemoryOverLimit`], [`Error::Cancelled`].
+    pub fn wannier(&self, input: WannierInput, control: &dyn Control) -> Result<Wannier, Error> {
         let WannierInput { band, points_per_site, sites } = input;
         check_band(band, "band")?;
         limits::POINTS_PER_SITE.check(index(points_per_site))?;
@@ -75,7 +88,7 @@ impl Lattice {
         let points = zone_points(self.depth_er(), band, sites)?;
         let states = bloch_states(self.depth_er(), band, &zone(points, 0.5));
         let spacing_nm = self.spacing_nm();
-        let amplitude = tabulate(&states, band, &positions)
+        let amplitude = tabulate(&states, band, &positions, control)?
             .into_iter()
             .map(|w| w / spacing_nm.sqrt())
             .collect();
@@ -90,8 +103,8 @@ impl Lattice {
     /// has decayed to rounding.
     ///
     /// # Errors
-    /// [`Error::OutOfRange`] for the band, [`Error::NotLocalised`].
-    pub fn onsite_integral(&self, band: usize) -> Result<f64, Error> {
+    /// [`Error::OutOfRange`] for the band, [`Error::NotLocalised`], [`Error::Cancelled`].
+    pub fn onsite_integral(&self, band: usize, control: &dyn Control) -> Result<f64, Error> {
         check_band(band, "band")?;
         let points = zone_points(self.depth_er(), band, 0)?;
         let states = bloch_states(self.depth_er(), band, &zone(points, 0.5));
@@ -102,7 +115,8 @@ impl Lattice {
         for site in 0..points / 2 {
             let positions: Vec<f64> =
                 (0..per_site).map(|k| index(site) + (index(k) + 0.5) / index(per_site)).collect();
-            let fourth: f64 = tabulate(&states, band, &positions).iter().map(|w| w.powi(4)).sum();
+            let values = tabulate(&states, band, &positions, control)?;
+            let fourth: f64 = values.iter().map(|w| w.powi(4)).sum();
             integral += 2.0 * fourth / index(per_site);
             if fourth <= 1e-17 * integral * index(per_site) {
                 break;
