@@ -123,7 +123,9 @@ def add_common(command: argparse.ArgumentParser) -> None:
     common.add_argument("--json", action="store_true", help="print one JSON document")
     common.add_argument("--value", metavar="KEY", help="print this number or text, nothing else")
     common.add_argument("--quiet", action="store_true", help="print the verdict only")
-    common.add_argument("--verbose", action="store_true", help="print defaults and their reasons too")
+    common.add_argument(
+        "--verbose", action="store_true", help="print defaults and their reasons too"
+    )
     common.add_argument("--threads", type=int, metavar="N", help="number of threads")
     common.add_argument("--seed", type=int, default=0, metavar="N", help="seed of random draws")
 
@@ -144,7 +146,8 @@ def check(options: argparse.Namespace) -> Answer:
         found, answer = check_apparatus(options)
     answer.code = FINE if found.meets_target else NO
     answer.verdict = found.verdict
-    answer.lines = [*found.table().rstrip("\n").split("\n"), *answer.lines]
+    table = found.table().rstrip("\n").split("\n")
+    answer.lines = [*table, *answer.lines]
     answer.document["check"] = json.loads(found.to_json())
     if options.figure is not None:
         draw(found, options.figure)

@@ -4,6 +4,15 @@
 //! An [`Apparatus`] is the text of such a file, checked as a whole. Comments
 //! and order survive changes, and a setting has the same name everywhere: its
 //! path, such as `lasers.raman.wavelength_nm`.
+//!
+//! ```
+//! use fluxloom_plan::{Apparatus, CheckOptions};
+//!
+//! let bay = Apparatus::from_toml(include_str!("../../../../notebooks-examples/tern_bay.toml"))?;
+//! let check = bay.check("3/8".parse()?, CheckOptions::default())?;
+//! assert!(check.meets_target && check.sites == 60);
+//! # Ok::<(), fluxloom_plan::Error>(())
+//! ```
 
 mod balance;
 mod check;
