@@ -2,6 +2,7 @@
 
 #![allow(clippy::unwrap_used)]
 
+use fluxloom_core::control::Unwatched;
 use fluxloom_core::flux::{
     AngleSearch, FluxInput, WavelengthSearch, flux, raman_angles, raman_wavelengths,
 };
@@ -21,9 +22,13 @@ fn search(range_nm: (f64, f64), angle_deg: f64) -> WavelengthSearch {
 #[test]
 fn counter_propagating_wavelengths_for_three_eighths() {
     // Closed form: 1064 nm/(branch + sense 3/8).
-    let found =
-        raman_wavelengths("3/8".parse().unwrap(), &lattice(), search((400.0, 1800.0), 180.0))
-            .unwrap();
+    let found = raman_wavelengths(
+        "3/8".parse().unwrap(),
+        &lattice(),
+        search((400.0, 1800.0), 180.0),
+        &Unwatched,
+    )
+    .unwrap();
     let wavelengths: Vec<f64> = found.iter().map(|s| s.wavelength_nm).collect();
     let expected = [0.625, 1.375, 1.625, 2.375, 2.625].map(|flux| 1064.0 / flux);
     assert_eq!(wavelengths.len(), expected.len());
@@ -36,22 +41,40 @@ fn counter_propagating_wavelengths_for_three_eighths() {
 #[test]
 fn angles_for_three_eighths() {
     let input = AngleSearch { range_deg: (0.0, 180.0), wavelength_nm: 769.0, tilt_deg: 0.0 };
-    let found = raman_angles("3/8".parse().unwrap(), &lattice(), input).unwrap();
+    let found = raman_angles("3/8".parse().unwrap(), &lattice(), input, &Unwatched).unwrap();
     assert_eq!(found.len(), 3);
     assert_near(found[0].angle_deg, 31.451, 5e-4, "smallest kick first");
 }
 
 #[test]
 fn a_half_has_one_sense_and_no_lever_is_said() {
-    let half =
-        raman_wavelengths("1/2".parse().unwrap(), &lattice(), search((500.0, 3000.0), 180.0));
+    let half = raman_wavelengths(
+        "1/2".parse().unwrap(),
+        &lattice(),
+        search((500.0, 3000.0), 180.0),
+        &Unwatched,
+    );
     assert_eq!(half.unwrap().len(), 2);
-    let none = raman_wavelengths("1/3".parse().unwrap(), &lattice(), search((500.0, 900.0), 0.0));
+    let none = raman_wavelengths(
+        "1/3".parse().unwrap(),
+        &lattice(),
+        search((500.0, 900.0), 0.0),
+        &Unwatched,
+    );
     assert!(none.unwrap().is_empty());
-    let any = raman_wavelengths("1".parse().unwrap(), &lattice(), search((500.0, 900.0), 0.0));
+    let any = raman_wavelengths(
+        "1".parse().unwrap(),
+        &lattice(),
+        search((500.0, 900.0), 0.0),
+        &Unwatched,
+    );
     assert_eq!(any.unwrap_err().code(), "flux.nothing_to_solve");
-    let empty =
-        raman_wavelengths("1/3".parse().unwrap(), &lattice(), search((900.0, 500.0), 180.0));
+    let empty = raman_wavelengths(
+        "1/3".parse().unwrap(),
+        &lattice(),
+        search((900.0, 500.0), 180.0),
+        &Unwatched,
+    );
     assert_eq!(empty.unwrap_err().code(), "range.empty");
     let wide = Lattice::new(LatticeInput {
         wavelength_nm: 20_000.0,
@@ -60,7 +83,12 @@ fn a_half_has_one_sense_and_no_lever_is_said() {
         ..LatticeInput::RETRO
     })
     .unwrap();
-    let many = raman_wavelengths("1/3".parse().unwrap(), &wide, search((100.0, 20_000.0), 180.0));
+    let many = raman_wavelengths(
+        "1/3".parse().unwrap(),
+        &wide,
+        search((100.0, 20_000.0), 180.0),
+        &Unwatched,
+    );
     assert_eq!(many.unwrap_err().code(), "flux.too_many_solutions");
 }
 
@@ -75,7 +103,7 @@ proptest! {
         let target = Flux::Fraction(Fraction::new(numerator, denominator).unwrap());
         let lattice = lattice();
         let input = WavelengthSearch { range_nm: (300.0, 2000.0), angle_deg, tilt_deg };
-        for s in raman_wavelengths(target, &lattice, input).unwrap() {
+        for s in raman_wavelengths(target, &lattice, input, &Unwatched).unwrap() {
             let again = flux(FluxInput {
                 spacing_nm: lattice.spacing_nm(),
                 wavelength_nm: s.wavelength_nm,

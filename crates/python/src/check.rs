@@ -1,27 +1,17 @@
-//! `FluxCheck`, the verdict on a wavelength, and the functions around it.
+//! `FluxCheck`, the verdict on a wavelength.
 
-use fluxloom_core::control::go_on;
-use fluxloom_core::flux::{
-    AngleSearch, FluxInput, Solution, WavelengthSearch, flux as flux_of, fold as fold_of,
-    raman_angles as angles, raman_wavelengths as wavelengths,
-};
-use fluxloom_core::lattice::{BandGrid, band_energies_er as energies};
 use fluxloom_core::limits;
 use fluxloom_plan::check::NearFraction;
 use fluxloom_plan::{CheckOptions, FluxCheck, check_flux as check};
-use numpy::IntoPyArray;
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 
-use crate::convert::{
-    Numbers, flux, list, number, numbers, pair, python_flux, python_fraction, read_only, shaped,
-    size, small_count,
-};
+use crate::convert::{flux, number, python_flux, python_fraction, small_count};
 use crate::documents::document;
 use crate::enter;
 use crate::errors::wrong_type;
 use crate::lattice::PyLattice;
-use crate::raman::{PyRamanPair, PySolution};
+use crate::raman::PyRamanPair;
 
 /// The verdict on one Raman pair, one lattice and one target flux.
 ///
@@ -327,165 +317,4 @@ pub fn check_flux(
     let target = flux(target, "target")?;
     let inner = enter::short(py, || check(&lattice.inner, &raman.inner, target, options))?;
     Ok(PyFluxCheck { inner })
-}
-
-/// A flux folded into (-1/2, 1/2]; a number or an array.
-#[pyfunction]
-pub fn fold<'py>(x: &Bound<'py, PyAny>) -> PyResult<Bound<'py, PyAny>> {
-    let Numbers { shape, values } = numbers(x, "x")?;
-    let checked: Result<Vec<f64>, _> =
-        values.into_iter().map(|x| limits::FLUX.check_as(x, "x").map(fold_of)).collect();
-    let folded = checked.map_err(|error| crate::errors::raise_core(x.py(), error))?;
-    shaped(x.py(), &shape, folded)
-}
-
-/// The flux of crossing beams for arrays of settings that have been broadcast
-/// against each other; see ``fluxloom.flux``.
-#[pyfunction]
-pub fn flux_of_arrays<'py>(
-    py: Python<'py>,
-    spacing_nm: &Bound<'py, PyAny>,
-    wavelength_nm: &Bound<'py, PyAny>,
-    angle_deg: &Bound<'py, PyAny>,
-    tilt_deg: &Bound<'py, PyAny>,
-) -> PyResult<Bound<'py, PyAny>> {
-    let Numbers { shape, values: spacings } = numbers(spacing_nm, "spacing_nm")?;
-    let wavelengths = numbers(wavelength_nm, "wavelength_nm")?.values;
-    let angles = numbers(angle_deg, "angle_deg")?.values;
-    let tilts = numbers(tilt_deg, "tilt_deg")?.values;
-    let fluxes = enter::long(py, |control| {
-        fluxloom_core::control::allow_numbers(&[spacings.len()], 8)?;
-        let mut fluxes = Vec::with_capacity(spacings.len());
-        let settings = spacings.iter().zip(&wavelengths).zip(angles.iter().zip(&tilts));
-        for (place, ((spacing_nm, wavelength_nm), (angle_deg, tilt_deg))) in settings.enumerate() {
-            if place % 65_536 == 0 {
-                go_on(control)?;
-            }
-            fluxes.push(flux_of(FluxInput {
-                spacing_nm: *spacing_nm,
-                wavelength_nm: *wavelength_nm,
-                angle_deg: *angle_deg,
-                tilt_deg: *tilt_deg,
-            })?);
-        }
-        Ok::<_, fluxloom_core::Error>(fluxes)
-    })?;
-    shaped(py, &shape, fluxes)
-}
-
-/// Energies of the lowest bands for many depths and quasimomenta at once.
-///
-/// Parameters
-/// ----------
-/// depths_er : float or 1-d array
-///     Depths in lattice recoils.
-/// quasimomenta : float or 1-d array
-///     Quasimomenta in k_L = pi/a.
-/// count : int
-///     Number of bands, 1 to 32.
-///
-/// Returns
-/// -------
-/// ndarray
-///     Energies in lattice recoils, ``[depth, quasimomentum, band]``, good to
-///     1e-10 and better.
-///
-/// Examples
-/// --------
-/// >>> import fluxloom as fl
-/// >>> fl.band_energies_er([3.0, 10.0], [0.0, 1.0], count=2).shape
-/// (2, 2, 2)
-#[pyfunction]
-#[pyo3(signature = (depths_er, quasimomenta, *, count=None))]
-pub fn band_energies_er<'py>(
-    py: Python<'py>,
-    depths_er: &Bound<'py, PyAny>,
-    quasimomenta: &Bound<'py, PyAny>,
-    count: Option<&Bound<'py, PyAny>>,
-) -> PyResult<Bound<'py, PyAny>> {
-    let depths = list(depths_er, "depths_er")?;
-    let quasimomenta = list(quasimomenta, "quasimomenta")?;
-    let count = count.map_or(Ok(4), |value| size(value, &limits::BAND_COUNT, "count"))?;
-    let grid = BandGrid { depths_er: &depths, quasimomenta: &quasimomenta, count };
-    let found = enter::long(py, |control| energies(grid, control))?;
-    Ok(read_only(found.into_dyn().into_pyarray(py)).into_any())
-}
-
-fn solutions(py: Python<'_>, found: Vec<Solution>) -> PyResult<Bound<'_, PyTuple>> {
-    PyTuple::new(py, found.into_iter().map(|inner| PySolution { inner }).collect::<Vec<_>>())
-}
-
-/// All Raman wavelengths in a range that reach a target flux, over all branches
-/// and senses, the largest kick overlap first.
-///
-/// Parameters
-/// ----------
-/// target : str, (int, int), Fraction or float
-/// lattice : Lattice
-/// range_nm : (float, float)
-///     Shortest and longest wavelength.
-/// angle_deg, tilt_deg : float
-///     Crossing angle of the beams, and tilt of their difference.
-///
-/// Returns
-/// -------
-/// tuple of Solution
-///
-/// Examples
-/// --------
-/// >>> import fluxloom as fl
-/// >>> lattice = fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)
-/// >>> found = fl.raman_wavelengths("3/8", lattice, range_nm=(766, 775))
-/// >>> [round(s.wavelength_nm, 3) for s in found]
-/// [773.818]
-#[pyfunction]
-#[pyo3(signature = (target, lattice, *, range_nm, angle_deg=None, tilt_deg=None))]
-pub fn raman_wavelengths<'py>(
-    py: Python<'py>,
-    target: &Bound<'py, PyAny>,
-    lattice: &PyLattice,
-    range_nm: &Bound<'py, PyAny>,
-    angle_deg: Option<&Bound<'py, PyAny>>,
-    tilt_deg: Option<&Bound<'py, PyAny>>,
-) -> PyResult<Bound<'py, PyTuple>> {
-    let target = flux(target, "target")?;
-    let search = WavelengthSearch {
-        range_nm: pair(range_nm, "range_nm")?,
-        angle_deg: angle_deg.map_or(Ok(180.0), |value| number(value, "angle_deg"))?,
-        tilt_deg: tilt_deg.map_or(Ok(0.0), |value| number(value, "tilt_deg"))?,
-    };
-    solutions(py, enter::long(py, |_| wavelengths(target, &lattice.inner, search))?)
-}
-
-/// All crossing angles in a range at which beams of one wavelength reach a
-/// target flux, over all branches and senses, the largest kick overlap first.
-///
-/// Parameters
-/// ----------
-/// target : str, (int, int), Fraction or float
-/// lattice : Lattice
-/// wavelength_nm : float
-/// tilt_deg : float
-/// range_deg : (float, float)
-///
-/// Returns
-/// -------
-/// tuple of Solution
-#[pyfunction]
-#[pyo3(signature = (target, lattice, *, wavelength_nm, tilt_deg=None, range_deg=None))]
-pub fn raman_angles<'py>(
-    py: Python<'py>,
-    target: &Bound<'py, PyAny>,
-    lattice: &PyLattice,
-    wavelength_nm: &Bound<'py, PyAny>,
-    tilt_deg: Option<&Bound<'py, PyAny>>,
-    range_deg: Option<&Bound<'py, PyAny>>,
-) -> PyResult<Bound<'py, PyTuple>> {
-    let target = flux(target, "target")?;
-    let search = AngleSearch {
-        range_deg: range_deg.map_or(Ok((0.0, 180.0)), |value| pair(value, "range_deg"))?,
-        wavelength_nm: number(wavelength_nm, "wavelength_nm")?,
-        tilt_deg: tilt_deg.map_or(Ok(0.0), |value| number(value, "tilt_deg"))?,
-    };
-    solutions(py, enter::long(py, |_| angles(target, &lattice.inner, search))?)
 }

@@ -110,17 +110,21 @@ pub fn python_fraction(py: Python<'_>, fraction: Fraction) -> PyResult<Bound<'_,
         .call1((fraction.numerator(), fraction.denominator()))
 }
 
-/// Three numbers.
-pub fn vector(value: &Bound<'_, PyAny>, field: &str) -> PyResult<[f64; 3]> {
-    let wanted = "three numbers";
+/// The items of a sequence; a text is none.
+fn items<'py>(
+    value: &Bound<'py, PyAny>,
+    field: &str,
+    wanted: &str,
+) -> PyResult<Vec<Bound<'py, PyAny>>> {
     if value.is_instance_of::<PyString>() {
         return Err(wrong_type(field, value, wanted));
     }
-    let items: Vec<Bound<'_, PyAny>> = value
-        .try_iter()
-        .and_then(Iterator::collect)
-        .map_err(|_| wrong_type(field, value, wanted))?;
-    match items.as_slice() {
+    value.try_iter().and_then(Iterator::collect).map_err(|_| wrong_type(field, value, wanted))
+}
+
+/// Three numbers.
+pub fn vector(value: &Bound<'_, PyAny>, field: &str) -> PyResult<[f64; 3]> {
+    match items(value, field, "three numbers")?.as_slice() {
         [x, y, z] => Ok([number(x, field)?, number(y, field)?, number(z, field)?]),
         other => {
             Err(PyTypeError::new_err(format!("{field} must be three numbers, not {}", other.len())))
@@ -131,14 +135,7 @@ pub fn vector(value: &Bound<'_, PyAny>, field: &str) -> PyResult<[f64; 3]> {
 /// A pair of numbers, such as a range.
 pub fn pair(value: &Bound<'_, PyAny>, field: &str) -> PyResult<(f64, f64)> {
     let wanted = "two numbers (low, high)";
-    if value.is_instance_of::<PyString>() {
-        return Err(wrong_type(field, value, wanted));
-    }
-    let items: Vec<Bound<'_, PyAny>> = value
-        .try_iter()
-        .and_then(Iterator::collect)
-        .map_err(|_| wrong_type(field, value, wanted))?;
-    match items.as_slice() {
+    match items(value, field, wanted)?.as_slice() {
         [low, high] => Ok((number(low, field)?, number(high, field)?)),
         _ => Err(wrong_type(field, value, wanted)),
     }

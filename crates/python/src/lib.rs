@@ -13,6 +13,7 @@ mod convert;
 mod documents;
 mod enter;
 mod errors;
+mod functions;
 mod lattice;
 mod raman;
 
@@ -72,9 +73,10 @@ mod _core {
     #[pymodule_export]
     use super::atom::{PyAtom, PyDataSource, PySourceTable};
     #[pymodule_export]
-    use super::check::{
-        PyFluxCheck, PyNearFraction, band_energies_er, check_flux, flux_of_arrays, fold,
-        raman_angles, raman_wavelengths,
+    use super::check::{PyFluxCheck, PyNearFraction, check_flux};
+    #[pymodule_export]
+    use super::functions::{
+        band_energies_er, flux_of_arrays, fold, raman_angles, raman_wavelengths,
     };
     #[pymodule_export]
     use super::lattice::{PyBands, PyLattice, PyWannier};

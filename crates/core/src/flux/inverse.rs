@@ -2,6 +2,7 @@
 
 use serde::{Deserialize, Serialize};
 
+use crate::control::Control;
 use crate::degrees::{cos_deg, sin_deg};
 use crate::error::Error;
 use crate::flux::formula::{FluxInput, flux};
@@ -109,16 +110,38 @@ fn reached(target: Flux, branch: i64, sense: Sense) -> f64 {
     target.reached(branch as f64, sense)
 }
 
-fn finish(lattice: &Lattice, mut solutions: Vec<Solution>) -> Result<Vec<Solution>, Error> {
-    for solution in &mut solutions {
-        solution.flux = flux(FluxInput {
-            spacing_nm: lattice.spacing_nm(),
-            wavelength_nm: solution.wavelength_nm,
-            angle_deg: solution.angle_deg,
-            tilt_deg: solution.tilt_deg,
-        })?;
-        solution.kick_overlap = lattice.kick_overlap(2.0 * solution.flux, Transfer::ON_SITE)?;
-    }
+/// A solution before its flux and overlap are worked out.
+struct Setting {
+    wavelength_nm: f64,
+    angle_deg: f64,
+    branch: i64,
+    sense: Sense,
+}
+
+/// The settings with their fluxes and overlaps, the largest overlap first.
+fn finish(
+    lattice: &Lattice,
+    tilt_deg: f64,
+    settings: &[Setting],
+    control: &dyn Control,
+) -> Result<Vec<Solution>, Error> {
+    let spacing_nm = lattice.spacing_nm();
+    let fluxes: Vec<f64> = settings
+        .iter()
+        .map(|&Setting { wavelength_nm, angle_deg, .. }| {
+            flux(FluxInput { spacing_nm, wavelength_nm, angle_deg, tilt_deg })
+        })
+        .collect::<Result<_, _>>()?;
+    let kicks: Vec<f64> = fluxes.iter().map(|flux| 2.0 * flux).collect();
+    let overlaps = lattice.kick_overlaps_of(&kicks, Transfer::ON_SITE, control)?;
+    let mut solutions: Vec<Solution> = settings
+        .iter()
+        .zip(fluxes.into_iter().zip(overlaps))
+        .map(|(setting, (flux, kick_overlap))| {
+            let &Setting { wavelength_nm, angle_deg, branch, sense } = setting;
+            Solution { wavelength_nm, angle_deg, tilt_deg, flux, branch, sense, kick_overlap }
+        })
+        .collect();
     solutions.sort_by(|a, b| {
         b.kick_overlap
             .total_cmp(&a.kick_overlap)
@@ -134,11 +157,12 @@ fn finish(lattice: &Lattice, mut solutions: Vec<Solution>) -> Result<Vec<Solutio
 /// # Errors
 /// [`Error::OutOfRange`], [`Error::EmptyRange`], [`Error::TooManySolutions`];
 /// [`Error::Contradiction`] (`flux.nothing_to_solve`) where the flux is 0 at
-/// every wavelength and that is what was asked.
+/// every wavelength and that is what was asked; [`Error::Cancelled`].
 pub fn raman_wavelengths(
     target: Flux,
     lattice: &Lattice,
     search: WavelengthSearch,
+    control: &dyn Control,
 ) -> Result<Vec<Solution>, Error> {
     let WavelengthSearch { range_nm, angle_deg, tilt_deg } = search;
     check_range(range_nm, limits::WAVELENGTH_NM, "range_nm")?;
@@ -150,24 +174,16 @@ pub fn raman_wavelengths(
     }
     let ends = (reach_nm / range_nm.0, reach_nm / range_nm.1);
     let span = (ends.0.min(ends.1), ends.0.max(ends.1));
-    let solutions = hits(target, span, ("range_nm", range_nm))?
+    let settings: Vec<Setting> = hits(target, span, ("range_nm", range_nm))?
         .into_iter()
         .filter(|(branch, sense)| reached(target, *branch, *sense) != 0.0)
         .map(|(branch, sense)| {
             let wavelength_nm = reach_nm / reached(target, branch, sense);
             let wavelength_nm = wavelength_nm.clamp(range_nm.0, range_nm.1);
-            Solution {
-                wavelength_nm,
-                angle_deg,
-                tilt_deg,
-                flux: 0.0,
-                branch,
-                sense,
-                kick_overlap: 0.0,
-            }
+            Setting { wavelength_nm, angle_deg, branch, sense }
         })
         .collect();
-    finish(lattice, solutions)
+    finish(lattice, tilt_deg, &settings, control)
 }
 
 /// All crossing angles in a range at which beams of one wavelength reach the
@@ -179,6 +195,7 @@ pub fn raman_angles(
     target: Flux,
     lattice: &Lattice,
     search: AngleSearch,
+    control: &dyn Control,
 ) -> Result<Vec<Solution>, Error> {
     let AngleSearch { range_deg, wavelength_nm, tilt_deg } = search;
     check_range(range_deg, limits::RAMAN_ANGLE_DEG, "range_deg")?;
@@ -190,23 +207,15 @@ pub fn raman_angles(
     }
     let ends = (most * sin_deg(0.5 * range_deg.0), most * sin_deg(0.5 * range_deg.1));
     let span = (ends.0.min(ends.1), ends.0.max(ends.1));
-    let solutions = hits(target, span, ("range_deg", range_deg))?
+    let settings: Vec<Setting> = hits(target, span, ("range_deg", range_deg))?
         .into_iter()
         .map(|(branch, sense)| {
             let angle_deg = angle_for(reached(target, branch, sense) / most).unwrap_or(180.0);
             let angle_deg = angle_deg.clamp(range_deg.0, range_deg.1);
-            Solution {
-                wavelength_nm,
-                angle_deg,
-                tilt_deg,
-                flux: 0.0,
-                branch,
-                sense,
-                kick_overlap: 0.0,
-            }
+            Setting { wavelength_nm, angle_deg, branch, sense }
         })
         .collect();
-    finish(lattice, solutions)
+    finish(lattice, tilt_deg, &settings, control)
 }
 
 fn no_lever(
