@@ -1,11 +1,16 @@
 """The command line, run as a user runs it."""
 
+import errno
+import io
 import json
+import os
 import subprocess
 import sys
 from pathlib import Path
 
 import pytest
+
+from fluxloom.commands import main
 
 BAY = str(Path(__file__).parent.parent / "notebooks-examples" / "tern_bay.toml")
 NUMBERS = ["--lattice-nm", "1064", "--raman-nm", "769.0", "--depth-er", "6", "--sites", "60"]
@@ -105,6 +110,22 @@ def test_changes_that_move_other_settings_are_told(tmp_path: Path) -> None:
             "1e13",
         ),
         (["check", *NUMBERS[:-1], "sixty", "--target", "1/3"], "command.not_a_number", "sixty"),
+        (["check", BAY, "--target", "3/8", "--set", "x.y=769,5"], "command.bad_set", "769.0"),
+        (["check", BAY, "--target", "3/8", "--set", "name='a'\nb=1"], "command.bad_set", "several"),
+        (
+            ["check", BAY, "--target", "3/8", *(2 * ["--set", "field.noise_ppm=1"])],
+            "command.set_twice",
+            "field.noise_ppm",
+        ),
+        (["check", BAY, "--target", "3/8", "--threads", "0"], "threads.out_of_range", "1024"),
+        (["check", BAY, "--target", "3/8", "--value", "flux"], "command.usage", "not allowed with"),
+        (["check", BAY, "--target", "3/8", "--sit", "60"], "command.usage", "--sit"),
+        (["check", BAY, "--target", "3/8", "--figure", "x.nonsense"], "command.bad_figure", ".png"),
+        (
+            ["check", BAY, "--target", "3/8", "--figure", "no such folder/x.png"],
+            "file.system",
+            "no such folder",
+        ),
     ],
 )
 def test_bad_input(arguments: list[str], code: str, word: str) -> None:
@@ -113,9 +134,10 @@ def test_bad_input(arguments: list[str], code: str, word: str) -> None:
     assert document["faults"][0]["code"] == code
     told = json.dumps(document["faults"])
     assert word in told
-    done = run(*arguments)
-    assert (done.returncode, done.stdout) == (2, "")
-    assert done.stderr.startswith("fluxloom: ")
+    if "--value" not in arguments:
+        done = run(*arguments)
+        assert (done.returncode, done.stdout) == (2, "")
+        assert done.stderr.startswith("fluxloom: ")
 
 
 def test_all_faults_of_a_file_with_their_lines(tmp_path: Path) -> None:
@@ -147,6 +169,51 @@ def test_pictures_are_written(tmp_path: Path) -> None:
     assert picture.read_bytes().startswith(b"\x89PNG")
     done = run("check", BAY, "--target", "3/8", "--figure", str(tmp_path / "check.nonsense"))
     assert done.returncode == 2
+
+
+def test_a_negative_flux_needs_no_trick() -> None:
+    code, document = answer("check", *NUMBERS, "--angle-deg", "31.451", "--target", "-3/8")
+    assert code == 0
+    assert document["check"]["sense"] == -1
+
+
+def test_no_text_or_terminal_makes_it_stumble(tmp_path: Path) -> None:
+    environment = {**os.environ, "PYTHONIOENCODING": "ascii"}
+    command = [sys.executable, "-m", "fluxloom", "check", BAY, "--json", "--target"]
+    for target, status in [("3/8", 0), ("3\N{LATIN SMALL LETTER E WITH ACUTE}", 2)]:
+        done = subprocess.run([*command, target], capture_output=True, env=environment, check=False)
+        assert done.returncode == status
+        assert json.loads(done.stdout)["command"] == "check"
+    # Bytes that are no text at all, as a shell may pass them.
+    done = subprocess.run([*command, b"3\xe9"], capture_output=True, check=False)
+    assert done.returncode == 2
+    assert json.loads(done.stdout)["faults"]
+
+
+def test_a_full_disk_is_not_an_answer(monkeypatch: pytest.MonkeyPatch, capsys) -> None:
+    class Full(io.StringIO):
+        def write(self, text: str) -> int:
+            raise OSError(errno.ENOSPC, "No space left on device")
+
+    monkeypatch.setattr(sys, "stdout", Full())
+    assert main(["check", BAY, "--target", "3/8"]) == 2
+    assert "No space left" in capsys.readouterr().err
+    assert main(["check", BAY, "--target", "3/8", "--json"]) == 2
+
+
+def test_a_closed_terminal_still_gets_an_exit_code(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(sys, "stdout", None)
+    assert main(["check", BAY, "--target", "3/8"]) == 0
+    assert main(["check", BAY, "--target", "3/0", "--json"]) == 2
+
+
+def test_a_fault_of_ours_is_not_the_answer_no(monkeypatch: pytest.MonkeyPatch, capsys) -> None:
+    def broken(*_: object) -> None:
+        raise RuntimeError("an internal computation failed")
+
+    monkeypatch.setattr("fluxloom.commands.check", broken)
+    assert main(["check", BAY, "--target", "3/8", "--json"]) == 3
+    assert json.loads(capsys.readouterr().out)["faults"][0]["code"] == "command.failed"
 
 
 def test_version() -> None:

@@ -2,13 +2,16 @@
 
 import sys
 
-from fluxloom.commands import main
-
 __all__ = ["run"]
 
 
 def run() -> None:
     """Run the command line and end the process with its exit code."""
+    try:
+        # Importing takes long enough to be interrupted.
+        from fluxloom.commands import main
+    except KeyboardInterrupt:
+        sys.exit(130)
     sys.exit(main(sys.argv[1:]))
 
 

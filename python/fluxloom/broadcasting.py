@@ -50,15 +50,29 @@ def flux(
     >>> fl.flux(spacing_nm=532.0, wavelength_nm=[[769.0], [780.0]], angle_deg=[30.0, 60.0]).shape
     (2, 2)
     """
-    settings = (spacing_nm, wavelength_nm, angle_deg, tilt_deg)
-    if all(isinstance(value, (int, float)) for value in settings):
-        return _core.flux_of_arrays(*settings)
+    settings = {
+        "spacing_nm": spacing_nm,
+        "wavelength_nm": wavelength_nm,
+        "angle_deg": angle_deg,
+        "tilt_deg": tilt_deg,
+    }
+    if all(type(value) in (int, float) for value in settings.values()):
+        return _core.flux_of_arrays(*settings.values())
+    arrays = {name: _array(name, value) for name, value in settings.items()}
     try:
-        shape = np.broadcast_shapes(*(np.shape(value) for value in settings))
+        shape = np.broadcast_shapes(*(array.shape for array in arrays.values()))
     except ValueError as problem:
-        shapes = ", ".join(str(np.shape(value)) for value in settings)
-        raise ValueError(
-            "spacing_nm, wavelength_nm, angle_deg and tilt_deg of shapes "
-            f"{shapes} do not fit together"
-        ) from problem
-    return _core.flux_of_arrays(*(np.broadcast_to(value, shape) for value in settings))
+        shapes = ", ".join(f"{name} {array.shape}" for name, array in arrays.items())
+        raise ValueError(f"these shapes do not fit together: {shapes}") from problem
+    return _core.flux_of_arrays(*(np.broadcast_to(array, shape) for array in arrays.values()))
+
+
+def _array(name: str, value: ArrayLike) -> NDArray[np.generic]:
+    """Make an array of what may be one; texts and ragged lists are refused by name."""
+    if value is not None and not isinstance(value, (str, bytes)):
+        try:
+            return np.asarray(value)
+        except ValueError:
+            pass
+    kind = type(value).__name__
+    raise TypeError(f"{name} must be a number or an array of numbers, not {kind}")

@@ -6,38 +6,25 @@ whatever the exit code.
 """
 
 import argparse
+import errno
 import json
 import os
 import sys
 import tomllib
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass, field
-from typing import NoReturn, TextIO, TypeVar
+from typing import NoReturn, TypeVar
 
 import fluxloom as fl
+from fluxloom.answers import Answer, Form, Plain, refuse, show
 
 __all__ = ["main"]
 
 FINE, NO, BAD_INPUT, NUMERICAL, INTERRUPTED = 0, 1, 2, 3, 130
 
-#: What may stand in an answer.
-Plain = str | int | float | bool | None | list["Plain"] | dict[str, "Plain"]
-
 Made = TypeVar("Made")
 
 #: Options that describe lattice and beams where no apparatus file does.
 GEOMETRY = ("lattice_nm", "depth_er", "raman_nm", "angle_deg", "lattice_angle_deg", "tilt_deg")
-
-
-@dataclass
-class Answer:
-    """What a command found: an exit code, a document, and lines for a person."""
-
-    code: int
-    document: dict[str, Plain]
-    verdict: str = ""
-    lines: list[str] = field(default_factory=list)
-    notes: list[str] = field(default_factory=list)
 
 
 class Parser(argparse.ArgumentParser):
@@ -52,27 +39,40 @@ def main(arguments: Sequence[str]) -> int:
     """Run one command; returns its exit code."""
     wants_json = "--json" in arguments
     command = next((word for word in arguments if not word.startswith("-")), "")
+    answer: Answer | None = None
     try:
-        options = parser().parse_args(arguments)
+        options = parser().parse_args(joined(arguments))
         if options.threads is not None:
-            fl.set_threads(options.threads)
+            fl.set_threads(number(options.threads, "threads"))
         answer = check(options)
-        show(answer, options, sys.stdout)
-        sys.stdout.flush()
+        show(answer, options.command, Form(options.json, options.value, options.quiet))
         return answer.code
     except fl.FluxloomError as error:
         code = {fl.InfeasibleError: NO, fl.NumericalError: NUMERICAL}.get(type(error), BAD_INPUT)
         return refuse(command, error, code, wants_json)
     except BrokenPipeError:
-        # The reader of a pipe has left; there is nobody to tell.
+        # The reader of a pipe has left; there is nobody to tell, but the answer stands.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-        return FINE
-    except (OSError, ImportError, MemoryError) as error:
-        return refuse(command, error, BAD_INPUT, wants_json)
+        return FINE if answer is None else answer.code
     except KeyboardInterrupt:
-        return refuse(
-            command, fl.FluxloomError("stopped", "run.cancelled"), INTERRUPTED, wants_json
-        )
+        stopped = fl.FluxloomError("stopped", "run.cancelled")
+        return refuse(command, stopped, INTERRUPTED, wants_json)
+    except (OSError, ImportError, MemoryError, UnicodeError) as error:
+        return refuse(command, error, BAD_INPUT, wants_json)
+    except Exception as error:
+        # A fault of ours: it must not look like the answer "no".
+        return refuse(command, error, NUMERICAL, wants_json)
+
+
+def joined(arguments: Sequence[str]) -> list[str]:
+    """Join ``--target -3/8`` into one word, which would be read as an option otherwise."""
+    words: list[str] = []
+    for word in arguments:
+        if words and words[-1] == "--target" and word[:1] == "-" and word[1:2].isdigit():
+            words[-1] = f"--target={word}"
+        else:
+            words.append(word)
+    return words
 
 
 def parser() -> Parser:
@@ -80,6 +80,7 @@ def parser() -> Parser:
     top = Parser(
         prog="fluxloom",
         description="Check settings of a Raman-coupled optical lattice against a target flux.",
+        allow_abbrev=False,
     )
     top.add_argument("--version", action="version", version=f"fluxloom {fl.__version__}")
     commands = top.add_subparsers(dest="command", required=True, metavar="COMMAND")
@@ -91,6 +92,7 @@ def parser() -> Parser:
             "stands today, or of numbers given by options."
         ),
         epilog="Exit codes: 0 met, 1 missed, 2 bad input, 3 numerical failure, 130 interrupted.",
+        allow_abbrev=False,
     )
     judge.add_argument("apparatus", nargs="?", metavar="APPARATUS.toml", help="apparatus file")
     judge.add_argument("--target", required=True, metavar="P/Q", help="flux, such as 3/8 or 0.375")
@@ -120,18 +122,21 @@ def add_common(command: argparse.ArgumentParser) -> None:
         metavar="PATH=VALUE",
         help="change a setting of the apparatus file, by its path; may be repeated",
     )
-    common.add_argument("--json", action="store_true", help="print one JSON document")
-    common.add_argument("--value", metavar="KEY", help="print this number or text, nothing else")
+    form = common.add_mutually_exclusive_group()
+    form.add_argument("--json", action="store_true", help="print one JSON document")
+    form.add_argument("--value", metavar="KEY", help="print this number or text, nothing else")
     common.add_argument("--quiet", action="store_true", help="print the verdict only")
     common.add_argument(
         "--verbose", action="store_true", help="print defaults and their reasons too"
     )
-    common.add_argument("--threads", type=int, metavar="N", help="number of threads")
+    common.add_argument("--threads", metavar="N", help="number of threads")
     common.add_argument("--seed", type=int, default=0, metavar="N", help="seed of random draws")
 
 
 def check(options: argparse.Namespace) -> Answer:
     """Carry out ``fluxloom check``."""
+    if options.figure is not None:
+        check_figure(options.figure)
     given = [name for name in GEOMETRY if getattr(options, name) is not None]
     if options.apparatus is None:
         found, answer = check_numbers(options)
@@ -158,7 +163,11 @@ def check(options: argparse.Namespace) -> Answer:
 def check_apparatus(options: argparse.Namespace) -> tuple[fl.FluxCheck, Answer]:
     """Judge an apparatus file as it stands, with the changes of ``--set``."""
     apparatus = fl.Apparatus.load(options.apparatus)
-    changes = dict(setting(text) for text in options.set)
+    changes: dict[str, Plain] = {}
+    for path, value in map(setting, options.set):
+        if path in changes:
+            raise fl.InputError(f"--set {path} is given twice: give it once", "command.set_twice")
+        changes[path] = value
     if changes:
         apparatus = apparatus.replace(changes)
     found = apparatus.check(
@@ -175,9 +184,12 @@ def check_apparatus(options: argparse.Namespace) -> tuple[fl.FluxCheck, Answer]:
     answer.notes += [f"moved too: {change}" for change in apparatus.changes]
     answer.notes += [f"caution: {caution}" for caution in apparatus.cautions]
     if options.verbose:
+        defaults = apparatus.defaults()
+        answer.document["defaults"] = {
+            path: {"value": value, "reason": reason} for path, (value, reason) in defaults.items()
+        }
         answer.lines += [
-            f"default: {path} = {value} ({reason})"
-            for path, (value, reason) in apparatus.defaults().items()
+            f"default: {path} = {value} ({reason})" for path, (value, reason) in defaults.items()
         ]
     return found, answer
 
@@ -243,7 +255,11 @@ def number(text: str | None, name: str, default: float = 0.0) -> float:
     try:
         return float(text)
     except ValueError:
-        raise fl.InputError(f"--{name} {text} is not a number", "command.not_a_number") from None
+        raise fl.InputError(
+            f"--{name} {text} is not a number: write a plain number, such as 60 or 769.0; the "
+            "unit is in the option's name",
+            "command.not_a_number",
+        ) from None
 
 
 def count(text: str | None, name: str) -> float | None:
@@ -260,10 +276,45 @@ def setting(text: str) -> tuple[str, Plain]:
             "--set lasers.raman.wavelength_nm=769.1",
             "command.bad_set",
         )
+    value = value.strip()
     try:
-        return path.strip(), tomllib.loads(f"value = {value}")["value"]
-    except tomllib.TOMLDecodeError:
-        return path.strip(), value.strip()
+        read = tomllib.loads(f"value = {value}")
+    except tomllib.TOMLDecodeError as problem:
+        # A bare word is a text; what begins like a number, list or table is a slip.
+        if value[:1] in tuple("+-.0123456789[{\"'"):
+            raise fl.InputError(
+                f"--set {path.strip()}={value} cannot be read ({problem}): write numbers as 769.0, "
+                "lists as [766.0, 775.0], tables as {value = 6.0, standard_error = 0.05}",
+                "command.bad_set",
+            ) from None
+        read = {"value": {"True": True, "False": False}.get(value, value)}
+    if list(read) != ["value"]:
+        raise fl.InputError(
+            f"--set {path.strip()}={value} holds several settings: give each its own --set",
+            "command.bad_set",
+        )
+    return path.strip(), read["value"]
+
+
+def check_figure(path: str) -> None:
+    """Refuse a name that no picture can be written to, before any work is done."""
+    try:
+        from matplotlib.figure import Figure
+    except ImportError as problem:
+        raise ImportError(
+            f'--figure needs matplotlib ({problem}): pip install "fluxloom[plots]"'
+        ) from problem
+    ending = os.path.splitext(path)[1].lower().removeprefix(".")
+    known = sorted(Figure().canvas.get_supported_filetypes())
+    if ending not in known:
+        raise fl.InputError(
+            f"--figure {path} does not end in the name of a picture format: "
+            + ", ".join(f".{name}" for name in known),
+            "command.bad_figure",
+        )
+    folder = os.path.dirname(path) or "."
+    if not os.path.isdir(folder):
+        raise FileNotFoundError(errno.ENOENT, "No such folder for --figure", folder)
 
 
 def draw(found: fl.FluxCheck, path: str) -> None:
@@ -272,56 +323,4 @@ def draw(found: fl.FluxCheck, path: str) -> None:
 
     figure = Figure(figsize=(8.0, 5.0), layout="constrained")
     found.plot(figure.add_subplot())
-    try:
-        figure.savefig(path, dpi=150)
-    except ValueError as problem:
-        raise fl.InputError(f"--figure {path}: {problem}", "command.bad_figure") from problem
-
-
-def show(answer: Answer, options: argparse.Namespace, out: TextIO) -> None:
-    """Print an answer in the form that was asked for."""
-    if options.value is not None:
-        print(single(answer.document["check"], options.value), file=out)
-    elif options.json:
-        document = {"command": options.command, "ok": True, **answer.document, "faults": []}
-        print(dump(document), file=out)
-    elif options.quiet:
-        print(answer.verdict, file=out)
-    else:
-        print("\n".join([answer.verdict, *answer.lines, *answer.notes]), file=out)
-
-
-def single(found: Plain, key: str) -> str:
-    """Return one number or text of a check as it is to be printed."""
-    table = found if isinstance(found, dict) else {}
-    known = [name for name, value in table.items() if not isinstance(value, (dict, list))]
-    if key not in known:
-        raise fl.InputError(
-            f"--value {key} is not a number or text of this answer; there are " + ", ".join(known),
-            "command.unknown_value",
-        )
-    value = table[key]
-    if value is None:
-        raise fl.InputError(f"--value {key}: this answer has none", "command.no_value")
-    return value if isinstance(value, str) else json.dumps(value)
-
-
-def dump(document: dict[str, Plain]) -> str:
-    """Return the text of an answer; NaN never gets into it."""
-    head: dict[str, Plain] = {"format": "fluxloom-answer", "version": 1}
-    return json.dumps({**head, **document}, indent=1, allow_nan=False, ensure_ascii=False)
-
-
-def refuse(command: str, error: BaseException, code: int, wants_json: bool) -> int:
-    """Report an error, on stderr or as the one document, and return the exit code."""
-    message = str(error)
-    faults: tuple[fl.Fault, ...] = ()
-    kind = "file.system" if isinstance(error, OSError) else "command.failed"
-    if isinstance(error, fl.FluxloomError):
-        faults, kind = error.faults, error.code
-    if wants_json:
-        listed: list[Plain] = [dict(fault) for fault in faults or (fl.Fault(kind, message),)]
-        print(dump({"command": command, "ok": False, "faults": listed}), flush=True)
-    else:
-        print(f"fluxloom: {message}", file=sys.stderr)
-    return code
+    figure.savefig(path, dpi=150)

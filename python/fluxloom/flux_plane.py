@@ -1,6 +1,7 @@
 """Where a check lies in the plane of wavelength and flux.
 
-For one geometry every wave vector goes as 1/wavelength, and so does the flux.
+For one geometry every wave vector goes as 1/wavelength, and so does the flux;
+a second beam with a wavelength of its own is held, and adds a constant.
 A target accepts the fluxes branch + sense x target, each with the band in which
 the phase error stays within the budget.
 """
@@ -35,22 +36,28 @@ class FluxPlane:
 
     def __init__(self, check: FluxCheck) -> None:
         self.check = check
-        # Pairs by directions are judged by the absorbed beam, the ratio of the two kept.
+        # Pairs by directions are judged by the absorbed beam.
         raman = check.raman
         self.today_nm = raman.wavelength_nm or raman.absorb_wavelength_nm or math.nan
+        self.held = 0.0
+        if raman.emit_wavelength_nm is not None:
+            other_nm = self.today_nm * (2.0 if 2.0 * self.today_nm <= _LARGEST_NM else 0.5)
+            other = raman.replace(absorb_wavelength_nm=other_nm).flux(check.lattice)
+            self.held = (other * other_nm - check.flux * self.today_nm) / (other_nm - self.today_nm)
+        self.tuned = check.flux - self.held
         # No flux is further than 1/2 from an accepted one: then everything is accepted.
         half = check.phase_budget_rad / (2.0 * math.pi * (check.sites - 1))
         self.half_height = min(half, 0.5)
 
     def flux(self, wavelength_nm: ArrayLike) -> NDArray[np.float64]:
-        """Give the flux of the same geometry: every wave vector goes as 1/wavelength."""
-        return self.check.flux * self.today_nm / np.asarray(wavelength_nm, dtype=np.float64)
+        """Give the flux of the same geometry at other wavelengths."""
+        return self.held + self.tuned * self.today_nm / np.asarray(wavelength_nm, dtype=np.float64)
 
     def wavelength_nm(self, flux: float) -> float | None:
         """Give the wavelength with a flux, if it is an allowed one."""
-        if self.check.flux == 0.0 or flux == 0.0:
+        if self.tuned == 0.0 or flux == self.held:
             return None
-        found = self.today_nm * self.check.flux / flux
+        found = self.today_nm * self.tuned / (flux - self.held)
         return found if _LEAST_NM <= found <= _LARGEST_NM else None
 
     def branches(self, low: float, high: float) -> list[Branch]:

@@ -193,8 +193,8 @@ def flux_check(
         Where to draw; a new figure if there are none.
     range_nm : (float, float), optional
         Wavelengths to show; by default today's, the one that hits and the next
-        branch. For beams given by directions that of the absorbed beam, all
-        wavelengths scaled together.
+        branch. For beams given by directions those of the absorbed beam; a
+        second beam with a wavelength of its own is held.
 
     Returns
     -------

@@ -62,6 +62,23 @@ fn free_bytes() -> u64 {
     if free == 0 { UNKNOWN_FREE_BYTES } else { free }
 }
 
+/// `count` zeros, for an answer that [`allow_numbers`] has let pass.
+///
+/// # Errors
+/// [`Error::MemoryOverLimit`] if the system has less than the limit promises.
+pub fn zeros(count: usize) -> Result<Vec<f64>, Error> {
+    let mut values = Vec::new();
+    values.try_reserve_exact(count).map_err(|_| {
+        #[allow(clippy::cast_precision_loss)]
+        let asked_bytes = count as f64 * 8.0;
+        #[allow(clippy::cast_precision_loss)]
+        let limit_bytes = (memory_limit_bytes() as f64).min(asked_bytes);
+        Error::MemoryOverLimit { asked_bytes, limit_bytes }
+    })?;
+    values.resize(count, 0.0);
+    Ok(values)
+}
+
 /// Below this an answer is never worth asking the system about, in bytes.
 const ALWAYS_ALLOWED_BYTES: f64 = 16.0 * 1024.0 * 1024.0;
 

@@ -173,29 +173,6 @@ pub enum Error {
     Cancelled,
 }
 
-/// Checks the first two keys of a serialised object.
-///
-/// # Errors
-/// [`Error::Contradiction`] with code `file.format` or `file.version_too_new`.
-pub fn check_format(expected: &'static str, format: &str, version: u32) -> Result<(), Error> {
-    if format != expected {
-        return Err(Error::Contradiction {
-            code: "file.format",
-            message: format!("format = \"{format}\" was found where \"{expected}\" is needed"),
-        });
-    }
-    if version != 1 {
-        return Err(Error::Contradiction {
-            code: "file.version_too_new",
-            message: format!(
-                "{expected} version {version} is not known here, only version 1: \
-                 it needs a newer Fluxloom"
-            ),
-        });
-    }
-    Ok(())
-}
-
 fn did_you_mean(name: Option<&str>) -> String {
     name.map_or_else(String::new, |name| format!(" (did you mean \"{name}\"?)"))
 }

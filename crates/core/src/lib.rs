@@ -8,6 +8,7 @@ pub mod atom;
 pub mod constants;
 pub mod control;
 pub mod degrees;
+pub mod documents;
 pub mod error;
 pub mod fault;
 pub mod flux;
@@ -18,6 +19,7 @@ pub mod rational;
 pub mod vector;
 
 pub use atom::Atom;
+pub use documents::Document;
 pub use error::Error;
 pub use lattice::{Lattice, LatticeInput};
 pub use light::{Crossing, Directions, RamanPair};

@@ -75,7 +75,7 @@ fn names_of_sources_are_units_and_lines() {
     assert_eq!(&names[..3], ["mass_u", "nuclear_spin", "hyperfine_a_hz"]);
     assert_eq!(names.len(), 6 + 6 + 7);
     let dipole = sources.iter().find(|row| row.name == "D1.dipole_au").unwrap();
-    assert_eq!((dipole.unit, dipole.status), ("a.u.", DataStatus::Verified));
+    assert_eq!((dipole.unit.as_ref(), dipole.status), ("a.u.", DataStatus::Verified));
     assert!(bibliography().count() > 30);
     assert!(source_meaning("STECK").unwrap().contains("Steck"));
     assert!(atom("87Sr").note().unwrap().contains("88Sr"));

@@ -7,18 +7,28 @@
 //! Class limits for continuous light: class 3B above 5 mW (visible), class 4
 //! above 500 mW (IEC 60825-1; from memory).
 
+use std::borrow::Cow;
+
+use fluxloom_core::Document;
+use serde::{Deserialize, Serialize};
+
 use crate::apparatus::Apparatus;
 use crate::apparatus::keys::{self, Found, Key, Kind};
 use crate::error::Error;
 use crate::files::path;
 
 /// A hazard, or a setting to think about, in words.
-#[derive(Debug, Clone, PartialEq, Eq)]
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
 pub struct Caution {
     /// Stable code.
-    pub code: &'static str,
+    pub code: Cow<'static, str>,
     /// What, from which settings, and whom to ask.
     pub text: String,
+}
+
+impl Document for Caution {
+    const FORMAT: &'static str = "fluxloom-caution";
 }
 
 /// Power above which a beam is taken for class 3B or 4.
@@ -58,7 +68,7 @@ impl Apparatus {
             let Ok(value) = self.number(&here) else { continue };
             if value < low || value > high {
                 cautions.push(Caution {
-                    code: "caution.outside_range",
+                    code: Cow::Borrowed("caution.outside_range"),
                     text: format!(
                         "{here} = {value} stands outside {range_path} = [{low}, {high}]: it is \
                          judged as it stands, but the planner will not choose it"
@@ -87,7 +97,7 @@ impl Apparatus {
         }
         let unseen = if invisible { "; light that the eye does not see among them" } else { "" };
         Ok(Some(Caution {
-            code: "caution.laser",
+            code: Cow::Borrowed("caution.laser"),
             text: format!(
                 "beams in the range of class 3B or 4: {}{unseen}. Eyewear, enclosures and \
                  interlocks follow your local rules and your laser safety officer, not this program",
@@ -102,7 +112,7 @@ impl Apparatus {
         let most =
             [field("field.magnitude_gauss"), range].into_iter().flatten().fold(0.0, f64::max);
         (most > STRONG_FIELD_GAUSS).then(|| Caution {
-            code: "caution.magnet",
+            code: Cow::Borrowed("caution.magnet"),
             text: format!(
                 "a bias field of up to {most} G takes coil currents that can burn, and that strike \
                  an arc when broken: cooling, interlocks and covers follow your local rules"

@@ -12,8 +12,9 @@ use fluxloom_core::flux::{
 use fluxloom_core::lattice::LinkOverlaps;
 use fluxloom_core::limits;
 use fluxloom_core::rational::{Flux, Fraction, Sense, nearest_fractions};
-use fluxloom_core::{Error, Lattice, RamanPair};
-use serde::{Deserialize, Serialize};
+use fluxloom_core::{Document, Error, Lattice, RamanPair};
+use serde::de::Error as _;
+use serde::{Deserialize, Deserializer, Serialize, Serializer};
 
 use crate::verdict;
 
@@ -51,12 +52,8 @@ pub const PHYSICAL_OVERLAP: f64 = 0.5;
 
 /// The verdict on one Raman pair, one lattice and one target.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(remote = "Self", deny_unknown_fields)]
 pub struct FluxCheck {
-    /// Always `fluxloom-check`.
-    pub format: CheckFormat,
-    /// Version of the serialised form.
-    pub version: u32,
     /// Whether the phase error stays within the budget.
     pub meets_target: bool,
     /// The verdict in one sentence.
@@ -91,7 +88,7 @@ pub struct FluxCheck {
     /// sites, nearest first, at most five.
     pub nearest: Vec<NearFraction>,
     /// Nearest wavelength that hits; for beams of two wavelengths that of the
-    /// absorbed one, their ratio kept.
+    /// absorbed one, the other held.
     pub exact_wavelength_nm: Option<f64>,
     /// Half-width about it within which the budget is kept.
     pub wavelength_tolerance_nm: Option<f64>,
@@ -113,12 +110,36 @@ pub struct FluxCheck {
     pub loop_phase_is_physical: Option<bool>,
 }
 
-/// The name of the serialised form.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
-pub enum CheckFormat {
-    /// The only one.
-    #[serde(rename = "fluxloom-check")]
-    Check,
+impl Document for FluxCheck {
+    const FORMAT: &'static str = "fluxloom-check";
+}
+
+impl Document for NearFraction {
+    const FORMAT: &'static str = "fluxloom-near-fraction";
+}
+
+impl Serialize for FluxCheck {
+    fn serialize<S: Serializer>(&self, serializer: S) -> Result<S::Ok, S::Error> {
+        Self::serialize(self, serializer)
+    }
+}
+
+impl<'de> Deserialize<'de> for FluxCheck {
+    fn deserialize<D: Deserializer<'de>>(deserializer: D) -> Result<Self, D::Error> {
+        // The derived reader, and then what the check itself would have refused.
+        let check = Self::deserialize(deserializer)?;
+        check_options(check.options()).map_err(D::Error::custom)?;
+        Ok(check)
+    }
+}
+
+impl FluxCheck {
+    /// How the flux was judged.
+    #[must_use]
+    pub fn options(&self) -> CheckOptions {
+        let &Self { sites, legs, closed, phase_budget_rad, .. } = self;
+        CheckOptions { sites, legs, closed, phase_budget_rad }
+    }
 }
 
 fn phase_rad(error: f64, sites: u32) -> f64 {
@@ -153,7 +174,7 @@ pub fn check_flux(
         })
         .collect();
     let flux_tolerance = options.phase_budget_rad / phase_rad(1.0, options.sites);
-    let wavelength = remedy::wavelength(raman, flux, target, flux_tolerance);
+    let wavelength = remedy::wavelength(raman, lattice, target, flux_tolerance);
     let angle = remedy::angle(raman, lattice, flux, target, flux_tolerance);
     let LinkOverlaps { on_site, diagonal_ratio } = lattice.link_overlaps(raman.kick(lattice))?;
     let loop_flux =
@@ -163,8 +184,6 @@ pub fn check_flux(
     #[allow(clippy::cast_possible_truncation)]
     let branch = branch as i64;
     let mut check = FluxCheck {
-        format: CheckFormat::Check,
-        version: 1,
         meets_target: phase_error_rad.abs() <= options.phase_budget_rad,
         verdict: String::new(),
         lattice: lattice.clone(),
@@ -230,21 +249,22 @@ mod remedy {
         candidates.min_by(|(a, _), (b, _)| (a - today).abs().total_cmp(&(b - today).abs()))
     }
 
-    /// The flux goes as 1/wavelength. The smaller of the two sides is the
-    /// tolerance, so that it holds on both.
+    /// The tuned part of the flux goes as 1/wavelength. The smaller of the two
+    /// sides is the tolerance, so that it holds on both.
     pub(super) fn wavelength(
         raman: &RamanPair,
-        flux: f64,
+        lattice: &Lattice,
         target: Flux,
         flux_tolerance: f64,
     ) -> Option<Hit> {
         let today = raman.leading_wavelength_nm();
-        if flux == 0.0 {
+        let (tuned, held) = raman.flux_parts(lattice);
+        if tuned == 0.0 {
             return None;
         }
-        let candidates = nearest_hits(flux, target)
+        let candidates = nearest_hits(tuned + held, target)
             .into_iter()
-            .map(|wanted| (today * flux / wanted, wanted))
+            .map(|wanted| (today * tuned / (wanted - held), wanted - held))
             .filter(|(value, _)| limits::WAVELENGTH_NM.contains(*value));
         let (value, wanted) = nearest(candidates, today)?;
         let tolerance = value * flux_tolerance / (wanted.abs() + flux_tolerance);

@@ -14,6 +14,20 @@ pub fn to_tolerance(value: f64, tolerance: f64) -> String {
     trim(&format!("{value:.digits$}"))
 }
 
+/// A tolerance with two significant digits, which never come out as zero.
+fn two_digits(tolerance: f64) -> String {
+    if tolerance == 0.0 {
+        return "0".to_owned();
+    }
+    let place = tolerance.abs().log10().floor();
+    if !(-5.0..=7.0).contains(&place) {
+        return format!("{tolerance:.1e}");
+    }
+    #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
+    let decimals = (1.0 - place).max(0.0) as usize;
+    format!("{tolerance:.decimals$}")
+}
+
 fn trim(text: &str) -> String {
     if text.contains('.') {
         text.trim_end_matches('0').trim_end_matches('.').to_owned()
@@ -78,10 +92,12 @@ pub fn sentence(check: &FluxCheck) -> String {
 
 fn remedy(check: &FluxCheck) -> String {
     let today_nm = check.raman.leading_wavelength_nm();
+    let two_colours = check.raman.as_directions().is_some_and(|d| d.emit_wavelength_nm.is_some());
+    let tune = if two_colours { "tune the absorbed beam" } else { "tune" };
     let wavelength = check
         .exact_wavelength_nm
         .zip(check.wavelength_tolerance_nm)
-        .map(|(value, tolerance)| format!("tune to {} nm", to_tolerance(value, tolerance)));
+        .map(|(value, tolerance)| format!("{tune} to {} nm", to_tolerance(value, tolerance)));
     let angle = check
         .exact_angle_deg
         .zip(check.angle_tolerance_deg)
@@ -125,13 +141,13 @@ pub fn table(check: &FluxCheck) -> String {
     if let Some((value, tolerance)) = check.exact_wavelength_nm.zip(check.wavelength_tolerance_nm) {
         rows.push((
             "exact wavelength",
-            format!("{} +- {tolerance:.2} nm", to_tolerance(value, tolerance)),
+            format!("{} +- {} nm", to_tolerance(value, tolerance), two_digits(tolerance)),
         ));
     }
     if let Some((value, tolerance)) = check.exact_angle_deg.zip(check.angle_tolerance_deg) {
         rows.push((
             "exact angle",
-            format!("{} +- {tolerance:.2} deg", to_tolerance(value, tolerance)),
+            format!("{} +- {} deg", to_tolerance(value, tolerance), two_digits(tolerance)),
         ));
     }
     let nearest: Vec<String> = check

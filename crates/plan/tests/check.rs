@@ -2,7 +2,7 @@
 
 #![allow(clippy::unwrap_used)]
 
-use fluxloom_core::{Crossing, Directions, Flux, Lattice, LatticeInput, RamanPair};
+use fluxloom_core::{Crossing, Directions, Document, Flux, Lattice, LatticeInput, RamanPair};
 use fluxloom_plan::{CheckOptions, FluxCheck, check_flux};
 use fluxloom_testkit::assert_near;
 use proptest::prelude::*;
@@ -89,6 +89,29 @@ fn tubes_report_how_they_close() {
 }
 
 #[test]
+fn advice_for_two_colours_hits_when_followed() {
+    let pair = |absorb_wavelength_nm| {
+        RamanPair::from_directions(Directions {
+            absorb: [1.0, 0.3, 0.0],
+            absorb_wavelength_nm,
+            emit: Some([-0.2, 1.0, 0.4]),
+            emit_wavelength_nm: Some(1000.0),
+        })
+        .unwrap()
+    };
+    let before = check_flux(&lattice(1064.0), &pair(769.0), flux("3/8"), over(60)).unwrap();
+    assert!(before.verdict.contains("tune the absorbed beam to"), "{}", before.verdict);
+    let exact = before.exact_wavelength_nm.unwrap();
+    let within = before.wavelength_tolerance_nm.unwrap();
+    let after = check_flux(&lattice(1064.0), &pair(exact), flux("3/8"), over(60)).unwrap();
+    assert_near(after.error, 0.0, 1e-12, "the advice");
+    for side in [-0.999, 0.999] {
+        let near = pair(exact + side * within);
+        assert!(check_flux(&lattice(1064.0), &near, flux("3/8"), over(60)).unwrap().meets_target);
+    }
+}
+
+#[test]
 fn co_propagating_beams_write_no_flux() {
     let check = check_flux(&lattice(1064.0), &crossing(769.0, 0.0), flux("3/8"), over(60)).unwrap();
     assert_eq!((check.flux, check.folded, i8::from(check.sense)), (0.0, 0.0, 1));
@@ -113,10 +136,12 @@ fn documents_come_back_exactly() {
     let tube = CheckOptions { legs: Some(3), closed: true, ..over(47) };
     let check =
         check_flux(&lattice(1064.0), &crossing(768.97, 31.4), Flux::Number(0.3701), tube).unwrap();
-    let text = serde_json::to_string(&check).unwrap();
-    assert_eq!(serde_json::from_str::<FluxCheck>(&text).unwrap(), check);
+    let text = check.to_json().unwrap();
+    assert_eq!(FluxCheck::from_json(&text).unwrap(), check);
     let damaged = text.replace("\"sense\":", "\"sens\":");
-    assert!(serde_json::from_str::<FluxCheck>(&damaged).is_err());
+    assert!(FluxCheck::from_json(&damaged).is_err());
+    let tube_without_legs = text.replace("\"legs\":3", "\"legs\":null");
+    assert!(FluxCheck::from_json(&tube_without_legs).is_err());
 }
 
 proptest! {

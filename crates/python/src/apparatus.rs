@@ -6,13 +6,15 @@ use fluxloom_plan::cautions::Caution;
 use fluxloom_plan::files::{Data, Entry, Node};
 use fluxloom_plan::{Apparatus, Error};
 use pyo3::prelude::*;
-use pyo3::types::{PyBool, PyDict, PyFloat, PyInt, PyList, PyString, PyTuple};
+use pyo3::types::{
+    PyBool, PyDict, PyFloat, PyInt, PyIterator, PyList, PyMapping, PyString, PyTuple,
+};
 use serde_json::Value;
 
 use crate::atom::PyAtom;
 use crate::check::{Judging, PyFluxCheck};
-use crate::convert::{flux, number};
-use crate::documents;
+use crate::convert::{flux, number, pairs};
+use crate::documents::{self, document};
 use crate::enter;
 use crate::errors::{raise, wrong_type};
 use crate::lattice::PyLattice;
@@ -55,7 +57,10 @@ impl PyApparatus {
 
     /// Reads nested dicts, as ``to_dict`` gives them.
     #[staticmethod]
-    fn from_dict(settings: &Bound<'_, PyDict>) -> PyResult<Self> {
+    fn from_dict(settings: &Bound<'_, PyAny>) -> PyResult<Self> {
+        if settings.cast::<PyMapping>().is_err() {
+            return Err(wrong_type("settings", settings, "a dict"));
+        }
         let tree = node(settings, "settings", DEEPEST)?;
         Ok(Self { inner: enter::short(settings.py(), || Apparatus::from_tree(tree))? })
     }
@@ -89,8 +94,19 @@ impl PyApparatus {
     }
 
     /// The value of a setting by its path, or its documented default.
-    fn __getitem__<'py>(&self, py: Python<'py>, path: &str) -> PyResult<Bound<'py, PyAny>> {
-        python_value(py, &self.inner.get(path).map_err(|error| raise(py, &error))?)
+    fn __getitem__<'py>(&self, path: &Bound<'py, PyAny>) -> PyResult<Bound<'py, PyAny>> {
+        let py = path.py();
+        let path: String = path.extract().map_err(|_| wrong_type("path", path, "a text"))?;
+        python_value(py, &self.inner.get(&path).map_err(|error| raise(py, &error))?)
+    }
+
+    // Without it Python would look for settings by number.
+    fn __contains__(&self, path: &Bound<'_, PyAny>) -> bool {
+        path.extract::<String>().is_ok_and(|path| self.inner.get(&path).is_ok())
+    }
+
+    fn __iter__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyIterator>> {
+        PyTuple::new(py, self.inner.paths())?.try_iter()
     }
 
     /// A number with its uncertainty, its data file and the day it was measured.
@@ -101,11 +117,12 @@ impl PyApparatus {
     /// The same apparatus with other values, by path; all faults at once.
     ///
     /// Depth and power of the lattice move together; ``changes`` says what moved.
-    fn replace(&self, changes: &Bound<'_, PyDict>) -> PyResult<Self> {
+    fn replace(&self, changes: &Bound<'_, PyAny>) -> PyResult<Self> {
         let py = changes.py();
-        let mut wanted = Vec::with_capacity(changes.len());
-        for (path, value) in changes {
-            let path: String = path.extract().map_err(|_| wrong_type("changes", &path, "texts"))?;
+        let mut wanted = Vec::new();
+        for (path, value) in pairs(changes, "changes")? {
+            let path: String =
+                path.extract().map_err(|_| wrong_type("a path in changes", &path, "a text"))?;
             let value = node(&value, &path, DEEPEST)?;
             wanted.push((path, value));
         }
@@ -159,7 +176,7 @@ impl PyApparatus {
     /// Judges today's settings against a target flux; see ``check_flux``.
     ///
     /// Without ``sites`` the cloud's length decides: the whole sites it covers, at least 2.
-    #[pyo3(signature = (flux, *, sites=None, legs=None, closed=None, phase_budget_rad=None))]
+    #[pyo3(signature = (flux, *, sites=None, legs=None, closed=None, phase_budget_rad=None), text_signature = "($self, flux, *, sites=None, legs=None, closed=False, phase_budget_rad=0.5)")]
     fn check(
         &self,
         py: Python<'_>,
@@ -192,6 +209,8 @@ impl PyApparatus {
 pub struct PyMeasured {
     inner: Measured,
 }
+
+document!(PyMeasured);
 
 #[pymethods]
 impl PyMeasured {
@@ -233,12 +252,14 @@ pub struct PyCaution {
     inner: Caution,
 }
 
+document!(PyCaution);
+
 #[pymethods]
 impl PyCaution {
     /// Stable code.
     #[getter]
-    fn code(&self) -> &'static str {
-        self.inner.code
+    fn code(&self) -> &str {
+        &self.inner.code
     }
 
     /// What, from which settings, and whom to ask.
@@ -288,10 +309,12 @@ fn node(value: &Bound<'_, PyAny>, path: &str, depth: usize) -> PyResult<Node> {
         }
     } else if let Ok(exact) = value.cast::<PyFloat>() {
         Data::Number(exact.value())
-    } else if let Ok(table) = value.cast::<PyDict>() {
-        let mut entries = Vec::with_capacity(table.len());
-        for (key, item) in table {
-            let key: String = key.extract().map_err(|_| wrong_type(path, &key, "texts as keys"))?;
+    } else if value.cast::<PyMapping>().is_ok() {
+        let mut entries = Vec::new();
+        for (key, item) in pairs(value, path)? {
+            let key: String = key
+                .extract()
+                .map_err(|_| wrong_type(&format!("a key of {path}"), &key, "a text"))?;
             let node = node(&item, &format!("{path}.{key}"), depth - 1)?;
             entries.push(Entry { key, node });
         }

@@ -2,10 +2,11 @@
 
 use fluxloom_core::Atom;
 use fluxloom_core::atom::DataSource;
+use fluxloom_core::limits;
 use pyo3::prelude::*;
-use pyo3::types::{PyDict, PyTuple};
+use pyo3::types::{PyInt, PyIterator, PyString, PyTuple};
 
-use crate::convert::{Numbers, number, numbers, shaped};
+use crate::convert::{Numbers, number, numbers, pairs, shaped};
 use crate::documents::document;
 use crate::errors::{raise_core, wrong_type};
 
@@ -101,7 +102,7 @@ impl PyAtom {
 
     /// Every number behind this atom, with uncertainty, unit, status and source.
     fn sources(&self) -> PySourceTable {
-        PySourceTable { rows: self.inner.sources() }
+        PySourceTable { atom: self.inner.clone(), rows: self.inner.sources() }
     }
 
     /// The same atom with own numbers; what follows from them follows.
@@ -113,10 +114,11 @@ impl PyAtom {
     /// source : str
     ///     Where the numbers come from; shows in every result's sources.
     #[pyo3(signature = (numbers, *, source))]
-    fn with_data(&self, numbers: &Bound<'_, PyDict>, source: &str) -> PyResult<Self> {
-        let mut changes = Vec::with_capacity(numbers.len());
-        for (key, value) in numbers {
-            let key: String = key.extract().map_err(|_| wrong_type("numbers", &key, "texts"))?;
+    fn with_data(&self, numbers: &Bound<'_, PyAny>, source: &str) -> PyResult<Self> {
+        let mut changes = Vec::new();
+        for (key, value) in pairs(numbers, "numbers")? {
+            let key: String =
+                key.extract().map_err(|_| wrong_type("a name in numbers", &key, "a text"))?;
             let value = number(&value, &key)?;
             changes.push((key, value));
         }
@@ -124,13 +126,14 @@ impl PyAtom {
         Ok(Self { inner: inner.map_err(|error| raise_core(numbers.py(), error))? })
     }
 
-    fn __repr__(&self) -> String {
-        let own: Vec<_> = self.inner.own_data().collect();
+    fn __repr__(&self, py: Python<'_>) -> PyResult<String> {
         let mut text = format!("Atom({:?})", self.inner.name());
-        for (key, value, source) in own {
-            text += &format!(".with_data({{{key:?}: {value:?}}}, source={source:?})");
+        for (key, value, source) in self.inner.own_data() {
+            // Python's own spelling of a text; Rust escapes differently.
+            let source = PyString::new(py, source).repr()?;
+            text += &format!(".with_data({{{key:?}: {value:?}}}, source={source})");
         }
-        text
+        Ok(text)
     }
 }
 
@@ -141,7 +144,9 @@ impl PyAtom {
         quantity: impl Fn(f64) -> Result<f64, fluxloom_core::Error>,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = values.py();
-        let Numbers { shape, values } = numbers(values, "wavelength_nm")?;
+        let found = numbers(values, "wavelength_nm")?;
+        found.check(py, &limits::WAVELENGTH_NM, "wavelength_nm")?;
+        let Numbers { shape, values } = found;
         let found: Result<Vec<f64>, _> = values.into_iter().map(quantity).collect();
         shaped(py, &shape, found.map_err(|error| raise_core(py, error))?)
     }
@@ -153,6 +158,8 @@ impl PyAtom {
 pub struct PyDataSource {
     inner: DataSource,
 }
+
+document!(PyDataSource);
 
 #[pymethods]
 impl PyDataSource {
@@ -177,7 +184,7 @@ impl PyDataSource {
     /// Its unit.
     #[getter]
     fn unit(&self) -> &str {
-        self.inner.unit
+        &self.inner.unit
     }
 
     /// How far it has been confirmed.
@@ -204,22 +211,49 @@ impl PyDataSource {
 #[pyclass(frozen, eq, module = "fluxloom", name = "SourceTable", sequence)]
 #[derive(PartialEq)]
 pub struct PySourceTable {
+    atom: Atom,
     rows: Vec<DataSource>,
 }
 
 #[pymethods]
 impl PySourceTable {
+    /// The atom whose numbers these are.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.atom.clone() }
+    }
+
+    // The table follows from the atom, so the atom is what is pickled.
+    fn __reduce__<'py>(
+        slf: &Bound<'py, Self>,
+    ) -> PyResult<(Bound<'py, PyAny>, (Bound<'py, PyAny>,))> {
+        let ask = slf.py().import("operator")?.getattr("methodcaller")?.call1(("sources",))?;
+        Ok((ask, (slf.getattr("atom")?,)))
+    }
+
     fn __len__(&self) -> usize {
         self.rows.len()
     }
 
-    fn __getitem__(&self, index: isize) -> PyResult<PyDataSource> {
-        let place = if index < 0 { index + self.rows.len().cast_signed() } else { index };
+    fn __getitem__(&self, index: &Bound<'_, PyAny>) -> PyResult<PyDataSource> {
+        // Too large for a place is simply out of range.
+        let asked: isize = match index.extract() {
+            Ok(asked) => asked,
+            Err(_) if index.is_instance_of::<PyInt>() => isize::MAX,
+            Err(_) => return Err(wrong_type("index", index, "a whole number")),
+        };
+        let length = self.rows.len().cast_signed();
+        let place = if asked < 0 { asked.saturating_add(length) } else { asked };
         usize::try_from(place)
             .ok()
             .and_then(|place| self.rows.get(place))
             .map(|row| PyDataSource { inner: row.clone() })
             .ok_or_else(|| pyo3::exceptions::PyIndexError::new_err("row out of range"))
+    }
+
+    fn __iter__<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyIterator>> {
+        let rows = self.rows.iter().map(|row| PyDataSource { inner: row.clone() });
+        PyTuple::new(py, rows.collect::<Vec<_>>())?.try_iter()
     }
 
     /// The table as a pandas DataFrame, one row per number.

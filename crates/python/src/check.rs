@@ -126,7 +126,8 @@ impl PyFluxCheck {
         PyTuple::new(py, near.collect::<Vec<_>>())
     }
 
-    /// Nearest wavelength that hits, or None.
+    /// Nearest wavelength that hits, or None; for beams of two wavelengths that
+    /// of the absorbed one, the other held.
     #[getter]
     fn exact_wavelength_nm(&self) -> Option<f64> {
         self.inner.exact_wavelength_nm
@@ -299,7 +300,7 @@ impl Judging<'_, '_> {
 /// >>> round(check.exact_wavelength_nm, 3)
 /// 773.818
 #[pyfunction]
-#[pyo3(signature = (lattice, raman, target, *, sites, legs=None, closed=None, phase_budget_rad=None))]
+#[pyo3(signature = (lattice, raman, target, *, sites, legs=None, closed=None, phase_budget_rad=None), text_signature = "(lattice, raman, target, *, sites, legs=None, closed=False, phase_budget_rad=0.5)")]
 pub fn check_flux(
     py: Python<'_>,
     lattice: &PyLattice,

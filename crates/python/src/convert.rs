@@ -10,7 +10,7 @@ use fluxloom_core::rational::{Flux, Fraction};
 use numpy::{IntoPyArray, PyArrayDyn, PyArrayMethods, PyReadonlyArrayDyn, ndarray::ArrayD};
 use pyo3::exceptions::PyTypeError;
 use pyo3::prelude::*;
-use pyo3::types::{PyBool, PyFloat, PyInt, PyString, PyTuple};
+use pyo3::types::{PyBool, PyFloat, PyInt, PyMapping, PyString, PyTuple};
 
 use crate::errors::{raise_core, wrong_type};
 
@@ -19,25 +19,36 @@ pub fn number(value: &Bound<'_, PyAny>, field: &str) -> PyResult<f64> {
     if let Ok(exact) = value.cast::<PyFloat>() {
         return Ok(exact.value());
     }
-    if is_truth(value)? || value.is_instance_of::<PyString>() || value.is_none() {
+    let is_real = match dtype_kind(value)? {
+        Some(kind) => REAL_KINDS.contains(&kind.as_str()),
+        None => !value.is_instance_of::<PyBool>() && !value.is_instance_of::<PyString>(),
+    };
+    if !is_real || value.is_none() {
         return Err(wrong_type(field, value, "a number"));
     }
     if value.is_instance_of::<PyInt>() {
         // Too large for a double is infinite here, and refused by every limit.
-        return Ok(value.extract().unwrap_or(f64::INFINITY));
+        let infinite = if value.lt(0)? { f64::NEG_INFINITY } else { f64::INFINITY };
+        return Ok(value.extract().unwrap_or(infinite));
     }
     value.extract().map_err(|_| wrong_type(field, value, "a number"))
 }
 
+/// Kinds of numpy's numbers that are real: whole, unsigned, floating.
+const REAL_KINDS: [&str; 3] = ["i", "u", "f"];
+
+/// The letter for the kind of numpy's numbers and arrays; none for anything else.
+fn dtype_kind(value: &Bound<'_, PyAny>) -> PyResult<Option<String>> {
+    let Some(dtype) = value.getattr_opt("dtype")? else { return Ok(None) };
+    match dtype.getattr_opt("kind")? {
+        Some(kind) => Ok(kind.extract().ok()),
+        None => Ok(None),
+    }
+}
+
 /// Python's and numpy's truth values.
 fn is_truth(value: &Bound<'_, PyAny>) -> PyResult<bool> {
-    if value.is_instance_of::<PyBool>() {
-        return Ok(true);
-    }
-    match value.getattr_opt("dtype")? {
-        Some(dtype) => Ok(dtype.getattr("kind")?.extract::<String>()? == "b"),
-        None => Ok(false),
-    }
+    Ok(value.is_instance_of::<PyBool>() || dtype_kind(value)?.as_deref() == Some("b"))
 }
 
 /// A count within a limit.
@@ -70,8 +81,7 @@ pub fn flux(value: &Bound<'_, PyAny>, field: &str) -> PyResult<Flux> {
         let whole = Limit { field: "numerator", ..limits::FLUX };
         let above = out_of_range(parts.0, Limit { low: -9e15, high: 9e15, ..whole })?;
         // Zero is let through to the fraction itself, which has a better word for it.
-        let below = Limit { low: 0.0, ..limits::DENOMINATOR };
-        let below = out_of_range(parts.1, below)?;
+        let below = if parts.1 == 0.0 { 0 } else { out_of_range(parts.1, limits::DENOMINATOR)? };
         Fraction::new(above, below).map(Flux::Fraction).map_err(|error| raise_core(py, error))
     };
     if let Ok(text) = value.cast::<PyString>() {
@@ -141,12 +151,44 @@ pub fn pair(value: &Bound<'_, PyAny>, field: &str) -> PyResult<(f64, f64)> {
     }
 }
 
+/// The entries of a dict or anything like it.
+pub fn pairs<'py>(
+    value: &Bound<'py, PyAny>,
+    field: &str,
+) -> PyResult<Vec<(Bound<'py, PyAny>, Bound<'py, PyAny>)>> {
+    let mapping = value.cast::<PyMapping>().map_err(|_| wrong_type(field, value, "a dict"))?;
+    mapping.items()?.iter().map(|item| item.extract()).collect()
+}
+
 /// Numbers of any shape.
 pub struct Numbers {
     /// Empty for a single number.
     pub shape: Vec<usize>,
     /// In C order.
     pub values: Vec<f64>,
+}
+
+impl Numbers {
+    /// Checks every number against a limit; an error names the first bad one by its place.
+    pub fn check(&self, py: Python<'_>, limit: &Limit, field: &str) -> PyResult<()> {
+        let Some(place) = self.values.iter().position(|value| !limit.contains(*value)) else {
+            return Ok(());
+        };
+        let mut index = Vec::with_capacity(self.shape.len());
+        let mut rest = place;
+        for length in self.shape.iter().rev() {
+            index.push((rest % length).to_string());
+            rest /= length;
+        }
+        index.reverse();
+        let name = if index.is_empty() {
+            field.to_owned()
+        } else {
+            format!("{field}[{}]", index.join(", "))
+        };
+        let value = self.values.get(place).copied().unwrap_or_default();
+        limit.check_as(value, &name).map(|_| ()).map_err(|error| raise_core(py, error))
+    }
 }
 
 /// What one number of an argument takes: itself, its fellows and its answer.
@@ -162,9 +204,20 @@ pub fn numbers(value: &Bound<'_, PyAny>, field: &str) -> PyResult<Numbers> {
     let numpy = py.import("numpy")?;
     let array =
         numpy.call_method1("asarray", (value,)).map_err(|_| wrong_type(field, value, wanted))?;
-    let kind: String = array.getattr("dtype")?.getattr("kind")?.extract()?;
+    let kind = dtype_kind(&array)?.unwrap_or_default();
+    if kind == "O" {
+        // Fractions and the like: each by itself, so that None is not read as NaN.
+        let shape = array.getattr("shape")?.extract()?;
+        let items: Vec<Bound<'_, PyAny>> =
+            array.call_method0("ravel")?.call_method0("tolist")?.extract()?;
+        let values = items
+            .iter()
+            .map(|item| number(item, field).map_err(|_| wrong_type(field, item, wanted)))
+            .collect::<PyResult<_>>()?;
+        return Ok(Numbers { shape, values });
+    }
     // Truth values, texts, complex numbers and dates are not silently made real.
-    if !matches!(kind.as_str(), "i" | "u" | "f" | "O") {
+    if !REAL_KINDS.contains(&kind.as_str()) {
         return Err(wrong_type(field, value, wanted));
     }
     // Before anything is copied: a broadcast view may stand for far more than there is.

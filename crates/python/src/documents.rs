@@ -3,49 +3,34 @@
 
 use std::path::{Path, PathBuf};
 
-use fluxloom_core::fault::Fault;
+use fluxloom_core::Document;
 use fluxloom_plan::Error;
-use fluxloom_plan::files::{read_text, write_atomically};
+use fluxloom_plan::files::{load_document, save_document};
 use pyo3::exceptions::PyTypeError;
 use pyo3::prelude::*;
 use pyo3::types::{PyDict, PyList};
-use serde::Serialize;
-use serde::de::DeserializeOwned;
 
+use crate::enter;
 use crate::errors::raise;
 
 /// The JSON text of a value.
-pub fn to_json<T: Serialize>(value: &T) -> PyResult<String> {
-    serde_json::to_string(value).map_err(|error| PyTypeError::new_err(error.to_string()))
+pub fn to_json<T: Document>(py: Python<'_>, value: &T) -> PyResult<String> {
+    value.to_json().map_err(|fault| raise(py, &Error::Faults(vec![*fault])))
 }
 
 /// A value from its JSON text; what is wrong with the text becomes an `InputError`.
-pub fn from_json<T: DeserializeOwned>(py: Python<'_>, text: &str) -> PyResult<T> {
-    read(text, None).map_err(|error| raise(py, &error))
-}
-
-fn read<T: DeserializeOwned>(text: &str, file: Option<&Path>) -> Result<T, Error> {
-    serde_json::from_str(text).map_err(|error| {
-        Error::Faults(vec![Fault {
-            code: "file.not_valid".to_owned(),
-            file: file.map(fluxloom_plan::files::name_of),
-            line: Some(error.line()),
-            path: String::new(),
-            message: format!("this document cannot be read: {error}"),
-            did_you_mean: None,
-        }])
-    })
+pub fn from_json<T: Document + Send>(py: Python<'_>, text: &str) -> PyResult<T> {
+    enter::short(py, || T::from_json(text).map_err(|fault| Error::Faults(vec![*fault])))
 }
 
 /// Writes a value to a file, which appears whole or not at all.
-pub fn save<T: Serialize>(py: Python<'_>, value: &T, path: &Path) -> PyResult<()> {
-    let text = to_json(value)? + "\n";
-    py.detach(|| write_atomically(path, &text)).map_err(|error| raise(py, &error))
+pub fn save<T: Document + Sync>(py: Python<'_>, value: &T, path: &Path) -> PyResult<()> {
+    enter::short(py, || save_document(value, path))
 }
 
 /// Reads a value from a file.
-pub fn load<T: DeserializeOwned + Send>(py: Python<'_>, path: &Path) -> PyResult<T> {
-    py.detach(|| read(&read_text(path)?, Some(path))).map_err(|error| raise(py, &error))
+pub fn load<T: Document + Send>(py: Python<'_>, path: &Path) -> PyResult<T> {
+    enter::short(py, || load_document(path))
 }
 
 /// A file's path from a text or anything with `__fspath__`.
@@ -84,26 +69,30 @@ macro_rules! document {
     ($class:ident) => {
         #[pymethods]
         impl $class {
-            fn to_json(&self) -> PyResult<String> {
-                $crate::documents::to_json(&self.inner)
+            /// The object as a JSON text.
+            fn to_json(&self, py: Python<'_>) -> PyResult<String> {
+                $crate::documents::to_json(py, &self.inner)
             }
 
+            /// The object of a JSON text; numbers come back bit for bit.
             #[staticmethod]
             fn from_json(py: Python<'_>, text: &str) -> PyResult<Self> {
                 Ok(Self { inner: $crate::documents::from_json(py, text)? })
             }
 
+            /// Writes the JSON text to a file, which appears whole or not at all.
             fn save(&self, py: Python<'_>, path: &Bound<'_, PyAny>) -> PyResult<()> {
                 $crate::documents::save(py, &self.inner, &$crate::documents::path(path)?)
             }
 
+            /// Reads the object from a file that ``save`` wrote.
             #[staticmethod]
             fn load(py: Python<'_>, path: &Bound<'_, PyAny>) -> PyResult<Self> {
                 Ok(Self { inner: $crate::documents::load(py, &$crate::documents::path(path)?)? })
             }
 
             fn __reduce__<'py>(slf: &Bound<'py, Self>) -> PyResult<(Bound<'py, PyAny>, (String,))> {
-                let text = $crate::documents::to_json(&slf.get().inner)?;
+                let text = $crate::documents::to_json(slf.py(), &slf.get().inner)?;
                 Ok((slf.get_type().getattr("from_json")?, (text,)))
             }
         }

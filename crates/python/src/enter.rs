@@ -4,6 +4,7 @@
 //! Worker threads do not survive a `fork`. The pool remembers its process and
 //! is built anew in a child, so that a forked worker computes instead of hanging.
 
+use std::num::NonZero;
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{RecvTimeoutError, channel};
@@ -11,6 +12,7 @@ use std::sync::{Arc, Mutex, PoisonError};
 use std::time::Duration;
 
 use fluxloom_core::control::Control;
+use fluxloom_core::limits;
 use fluxloom_plan::Error;
 use pyo3::exceptions::PyRuntimeError;
 use pyo3::prelude::*;
@@ -31,12 +33,22 @@ static WORKERS: Mutex<Option<Workers>> = Mutex::new(None);
 
 /// A pool of `threads` threads (0: as `RAYON_NUM_THREADS` says, or one per core).
 fn build(threads: usize) -> PyResult<Workers> {
+    let count = if threads == 0 { default_threads() } else { threads };
     let pool = ThreadPoolBuilder::new()
-        .num_threads(threads)
+        .num_threads(count)
         .thread_name(|k| format!("fluxloom-{k}"))
         .build()
         .map_err(|error| PyRuntimeError::new_err(error.to_string()))?;
     Ok(Workers { process: std::process::id(), threads, pool: Arc::new(pool) })
+}
+
+/// As `RAYON_NUM_THREADS` says if it is a number within the limit, else one per core.
+fn default_threads() -> usize {
+    let asked = std::env::var("RAYON_NUM_THREADS").ok().and_then(|text| text.parse::<u16>().ok());
+    match asked {
+        Some(count) if limits::THREADS.contains(f64::from(count)) => usize::from(count),
+        _ => std::thread::available_parallelism().map_or(1, NonZero::get),
+    }
 }
 
 fn pool() -> PyResult<Arc<ThreadPool>> {

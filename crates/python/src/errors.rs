@@ -3,6 +3,8 @@
 //! The exception classes have several bases, so they are defined in Python
 //! (`fluxloom.exceptions`) and looked up once.
 
+use std::io::ErrorKind;
+
 use fluxloom_core::error::{Detail, Kind};
 use fluxloom_core::fault::Fault;
 use fluxloom_plan::Error;
@@ -78,13 +80,27 @@ fn system(error: &Error) -> PyErr {
         return PyOSError::new_err(error.to_string());
     };
     let name = path.display().to_string();
-    match source.raw_os_error() {
-        Some(number) => {
-            let text = source.to_string();
-            let text = text.split(" (os error").next().unwrap_or_default().to_owned();
-            PyOSError::new_err((number, text, name))
-        }
-        None => PyOSError::new_err(format!("{name}: {source}")),
+    let text = source.to_string();
+    let text = text.split(" (os error").next().unwrap_or_default().to_owned();
+    // Python picks the subclass of OSError by the number.
+    match source.raw_os_error().or_else(|| number_of(source.kind())) {
+        Some(number) => PyOSError::new_err((number, text, name)),
+        None => PyOSError::new_err(format!("{name}: {text}")),
+    }
+}
+
+/// The error number of a kind, where a library has wrapped the system's own
+/// error (POSIX numbers; Windows' C library has the same).
+fn number_of(kind: ErrorKind) -> Option<i32> {
+    match kind {
+        ErrorKind::NotFound => Some(2),
+        ErrorKind::PermissionDenied => Some(13),
+        ErrorKind::AlreadyExists => Some(17),
+        ErrorKind::NotADirectory => Some(20),
+        ErrorKind::IsADirectory => Some(21),
+        ErrorKind::StorageFull => Some(28),
+        ErrorKind::ReadOnlyFilesystem => Some(30),
+        _ => None,
     }
 }
 

@@ -6,25 +6,28 @@ use fluxloom_core::flux::{
     raman_angles as angles, raman_wavelengths as wavelengths,
 };
 use fluxloom_core::lattice::{BandGrid, band_energies_er as energies};
-use fluxloom_core::limits;
+use fluxloom_core::limits::{self, Limit};
 use numpy::IntoPyArray;
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 
 use crate::convert::{Numbers, flux, list, number, numbers, pair, read_only, shaped, size};
 use crate::enter;
-use crate::errors::raise_core;
 use crate::lattice::PyLattice;
 use crate::raman::PySolution;
 
 /// A flux folded into (-1/2, 1/2]; a number or an array.
+///
+/// Examples
+/// --------
+/// >>> import fluxloom as fl
+/// >>> fl.fold(1.375), fl.fold(-0.5)
+/// (0.375, 0.5)
 #[pyfunction]
 pub fn fold<'py>(x: &Bound<'py, PyAny>) -> PyResult<Bound<'py, PyAny>> {
-    let Numbers { shape, values } = numbers(x, "x")?;
-    let checked: Result<Vec<f64>, _> =
-        values.into_iter().map(|x| limits::FLUX.check_as(x, "x").map(fold_of)).collect();
-    let folded = checked.map_err(|error| raise_core(x.py(), error))?;
-    shaped(x.py(), &shape, folded)
+    let found = numbers(x, "x")?;
+    found.check(x.py(), &limits::FLUX, "x")?;
+    shaped(x.py(), &found.shape, found.values.into_iter().map(fold_of).collect())
 }
 
 /// The flux of crossing beams for arrays of settings that have been broadcast
@@ -37,10 +40,15 @@ pub fn flux_of_arrays<'py>(
     angle_deg: &Bound<'py, PyAny>,
     tilt_deg: &Bound<'py, PyAny>,
 ) -> PyResult<Bound<'py, PyAny>> {
-    let Numbers { shape, values: spacings } = numbers(spacing_nm, "spacing_nm")?;
-    let wavelengths = numbers(wavelength_nm, "wavelength_nm")?.values;
-    let angles = numbers(angle_deg, "angle_deg")?.values;
-    let tilts = numbers(tilt_deg, "tilt_deg")?.values;
+    let within = |value: &Bound<'py, PyAny>, limit: &Limit| -> PyResult<Numbers> {
+        let found = numbers(value, limit.field)?;
+        found.check(py, limit, limit.field)?;
+        Ok(found)
+    };
+    let Numbers { shape, values: spacings } = within(spacing_nm, &limits::SPACING_NM)?;
+    let wavelengths = within(wavelength_nm, &limits::WAVELENGTH_NM)?.values;
+    let angles = within(angle_deg, &limits::RAMAN_ANGLE_DEG)?.values;
+    let tilts = within(tilt_deg, &limits::TILT_DEG)?.values;
     let fluxes = enter::long(py, |control| {
         allow_numbers(&[spacings.len()], 8)?;
         let mut fluxes = Vec::with_capacity(spacings.len());
@@ -84,7 +92,7 @@ pub fn flux_of_arrays<'py>(
 /// >>> fl.band_energies_er([3.0, 10.0], [0.0, 1.0], count=2).shape
 /// (2, 2, 2)
 #[pyfunction]
-#[pyo3(signature = (depths_er, quasimomenta, *, count=None))]
+#[pyo3(signature = (depths_er, quasimomenta, *, count=None), text_signature = "(depths_er, quasimomenta, *, count=4)")]
 pub fn band_energies_er<'py>(
     py: Python<'py>,
     depths_er: &Bound<'py, PyAny>,
@@ -127,7 +135,7 @@ fn solutions(py: Python<'_>, found: Vec<Solution>) -> PyResult<Bound<'_, PyTuple
 /// >>> [round(s.wavelength_nm, 3) for s in found]
 /// [773.818]
 #[pyfunction]
-#[pyo3(signature = (target, lattice, *, range_nm, angle_deg=None, tilt_deg=None))]
+#[pyo3(signature = (target, lattice, *, range_nm, angle_deg=None, tilt_deg=None), text_signature = "(target, lattice, *, range_nm, angle_deg=180.0, tilt_deg=0.0)")]
 pub fn raman_wavelengths<'py>(
     py: Python<'py>,
     target: &Bound<'py, PyAny>,
@@ -159,8 +167,16 @@ pub fn raman_wavelengths<'py>(
 /// Returns
 /// -------
 /// tuple of Solution
+///
+/// Examples
+/// --------
+/// >>> import fluxloom as fl
+/// >>> lattice = fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)
+/// >>> found = fl.raman_angles("3/8", lattice, wavelength_nm=769.0)
+/// >>> [round(s.angle_deg, 2) for s in found]
+/// [31.45, 53.71, 167.21]
 #[pyfunction]
-#[pyo3(signature = (target, lattice, *, wavelength_nm, tilt_deg=None, range_deg=None))]
+#[pyo3(signature = (target, lattice, *, wavelength_nm, tilt_deg=None, range_deg=None), text_signature = "(target, lattice, *, wavelength_nm, tilt_deg=0.0, range_deg=(0, 180))")]
 pub fn raman_angles<'py>(
     py: Python<'py>,
     target: &Bound<'py, PyAny>,

@@ -62,7 +62,7 @@ fn reach(value: Option<&Bound<'_, PyAny>>, default: i32) -> PyResult<i32> {
 #[pymethods]
 impl PyLattice {
     #[new]
-    #[pyo3(signature = (*, wavelength_nm, depth_er, angle_deg=None, axis=None))]
+    #[pyo3(signature = (*, wavelength_nm, depth_er, angle_deg=None, axis=None), text_signature = "(*, wavelength_nm, depth_er, angle_deg=180.0, axis=(1, 0, 0))")]
     fn new(
         py: Python<'_>,
         wavelength_nm: &Bound<'_, PyAny>,
@@ -143,7 +143,7 @@ impl PyLattice {
     /// ------
     /// NumericalError
     ///     ``lattice.not_localised`` next to free motion.
-    #[pyo3(signature = (*, reach=None, band=None))]
+    #[pyo3(signature = (*, reach=None, band=None), text_signature = "($self, *, reach=1, band=0)")]
     fn tunnelling_er(
         &self,
         py: Python<'_>,
@@ -155,7 +155,7 @@ impl PyLattice {
     }
 
     /// Tunnelling t_r/h over ``reach`` sites in hertz; see ``tunnelling_er``.
-    #[pyo3(signature = (atom, *, reach=None, band=None))]
+    #[pyo3(signature = (atom, *, reach=None, band=None), text_signature = "($self, atom, *, reach=1, band=0)")]
     fn tunnelling_hz(
         &self,
         py: Python<'_>,
@@ -168,7 +168,7 @@ impl PyLattice {
     }
 
     /// The lowest bands over the zone, quasimomenta ``linspace(-1, 1, points)`` in k_L.
-    #[pyo3(signature = (*, count=None, points=None))]
+    #[pyo3(signature = (*, count=None, points=None), text_signature = "($self, *, count=4, points=101)")]
     fn bands(
         &self,
         py: Python<'_>,
@@ -187,14 +187,14 @@ impl PyLattice {
 
     /// Effective mass over the atom's mass at q = 0, 2/E''(0); negative where
     /// the band is curved downwards.
-    #[pyo3(signature = (*, band=None))]
+    #[pyo3(signature = (*, band=None), text_signature = "($self, *, band=0)")]
     fn effective_mass(&self, py: Python<'_>, band: Option<&Bound<'_, PyAny>>) -> PyResult<f64> {
         let band = self::band(band, "band")?;
         enter::short(py, || self.inner.effective_mass(band))
     }
 
     /// Integral of w^4 over the Wannier function w, in units of k_L = pi/a.
-    #[pyo3(signature = (*, band=None))]
+    #[pyo3(signature = (*, band=None), text_signature = "($self, *, band=0)")]
     fn onsite_integral(&self, py: Python<'_>, band: Option<&Bound<'_, PyAny>>) -> PyResult<f64> {
         let band = self::band(band, "band")?;
         enter::long(py, |control| self.inner.onsite_integral(band, control))
@@ -202,7 +202,7 @@ impl PyLattice {
 
     /// The Wannier function of a band on a grid centred on its site: real, even
     /// in even bands, odd with a positive slope in odd bands.
-    #[pyo3(signature = (*, band=None, points_per_site=None, sites=None))]
+    #[pyo3(signature = (*, band=None, points_per_site=None, sites=None), text_signature = "($self, *, band=0, points_per_site=64, sites=8)")]
     fn wannier(
         &self,
         py: Python<'_>,
@@ -225,7 +225,7 @@ impl PyLattice {
     /// <w_d| exp(i kick k_L x) |w_0> = exp(i pi kick d/2) O_d within a band,
     /// d = ``reach``. Between bands (``reach=0`` only) the element itself for
     /// bands of equal parity, its imaginary part otherwise.
-    #[pyo3(signature = (kick, *, reach=None, band=None, to_band=None))]
+    #[pyo3(signature = (kick, *, reach=None, band=None, to_band=None), text_signature = "($self, kick, *, reach=0, band=0, to_band=0)")]
     fn kick_overlap<'py>(
         &self,
         py: Python<'py>,
@@ -240,7 +240,9 @@ impl PyLattice {
             band,
             to_band: self::band(to_band, "to_band")?,
         };
-        let Numbers { shape, values } = numbers(kick, "kick")?;
+        let kicks = numbers(kick, "kick")?;
+        kicks.check(py, &limits::KICK, "kick")?;
+        let Numbers { shape, values } = kicks;
         let found = if let [kick] = values.as_slice() {
             vec![enter::short(py, || self.inner.kick_overlap(*kick, transfer))?]
         } else {
@@ -328,7 +330,7 @@ impl PyBands {
 
     /// Gap between band ``lower`` and the next, in lattice recoils: the smallest
     /// over the zone, or that at a quasimomentum.
-    #[pyo3(signature = (lower=None, quasimomentum=None))]
+    #[pyo3(signature = (lower=None, quasimomentum=None), text_signature = "($self, lower=0, quasimomentum=None)")]
     fn gap_er(
         &self,
         py: Python<'_>,

@@ -27,7 +27,7 @@ use crate::lattice::PyLattice;
 /// >>> lattice = fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)
 /// >>> pair = fl.RamanPair(wavelength_nm=769.0, angle_deg=31.451)
 /// >>> round(pair.flux(lattice), 6)
-/// 0.374996
+/// 0.375
 /// >>> pair.swapped().flux(lattice) == -pair.flux(lattice)
 /// True
 #[pyclass(frozen, eq, module = "fluxloom", name = "RamanPair")]
@@ -41,7 +41,7 @@ document!(PyRamanPair);
 #[pymethods]
 impl PyRamanPair {
     #[new]
-    #[pyo3(signature = (*, wavelength_nm, angle_deg=None, tilt_deg=None))]
+    #[pyo3(signature = (*, wavelength_nm, angle_deg=None, tilt_deg=None), text_signature = "(*, wavelength_nm, angle_deg=180.0, tilt_deg=0.0)")]
     fn new(
         py: Python<'_>,
         wavelength_nm: &Bound<'_, PyAny>,

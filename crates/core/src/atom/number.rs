@@ -3,6 +3,7 @@
 
 use std::borrow::Cow;
 
+use crate::documents::Document;
 use serde::{Deserialize, Serialize};
 
 use super::table::{Entry, status_meaning};
@@ -111,7 +112,8 @@ impl Number {
 }
 
 /// One row of [`super::Atom::sources`].
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
 pub struct DataSource {
     /// Name of the number, such as `D1.dipole_au`.
     pub name: String,
@@ -120,11 +122,15 @@ pub struct DataSource {
     /// Standard uncertainty, in `unit`; `None` if nobody states one.
     pub uncertainty: Option<f64>,
     /// `"u"`, `"Hz"`, `"a.u."`, `"nm"`, `"s"`, or `"1"` for a bare number.
-    pub unit: &'static str,
+    pub unit: Cow<'static, str>,
     /// How far it is to be trusted.
     pub status: DataStatus,
     /// Where it comes from.
     pub source: String,
+}
+
+impl Document for DataSource {
+    const FORMAT: &'static str = "fluxloom-data-source";
 }
 
 impl DataSource {
@@ -132,7 +138,7 @@ impl DataSource {
         Self {
             value: number.value,
             uncertainty: number.uncertainty,
-            unit: unit_of(&name),
+            unit: Cow::Borrowed(unit_of(&name)),
             status: number.status,
             source: number.source.clone().into_owned(),
             name,

@@ -8,15 +8,16 @@ use serde::{Deserialize, Deserializer, Serialize};
 
 use super::Atom;
 use super::own::{Change, Own, OwnNumber};
-use crate::error::{Error, check_format};
+use crate::documents::Document;
+use crate::error::Error;
 
-const FORMAT: &str = "fluxloom-atom";
+impl Document for Atom {
+    const FORMAT: &'static str = "fluxloom-atom";
+}
 
 #[derive(Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub(super) struct RawAtom {
-    format: String,
-    version: u32,
     name: String,
     #[serde(deserialize_with = "unique")]
     own: Own,
@@ -24,7 +25,7 @@ pub(super) struct RawAtom {
 
 impl From<Atom> for RawAtom {
     fn from(atom: Atom) -> Self {
-        Self { format: FORMAT.to_owned(), version: 1, name: atom.name().to_owned(), own: atom.own }
+        Self { name: atom.name().to_owned(), own: atom.own }
     }
 }
 
@@ -32,7 +33,6 @@ impl TryFrom<RawAtom> for Atom {
     type Error = Error;
 
     fn try_from(raw: RawAtom) -> Result<Self, Error> {
-        check_format(FORMAT, &raw.format, raw.version)?;
         let atom = Self::new(&raw.name)?;
         let changes: Vec<Change<'_>> = raw
             .own
@@ -78,12 +78,12 @@ mod tests {
     fn written_down_and_read_back() {
         for name in Atom::available() {
             let atom = Atom::new(name).unwrap();
-            let text = serde_json::to_string(&atom).unwrap();
-            assert_eq!(serde_json::from_str::<Atom>(&text).unwrap(), atom);
+            let text = atom.to_json().unwrap();
+            assert_eq!(Atom::from_json(&text).unwrap(), atom);
         }
         let own = Atom::new("40K").unwrap().with_data(&[("D1.dipole_au", 4.1075)], "us").unwrap();
         assert_eq!(
-            serde_json::to_string(&own).unwrap(),
+            own.to_json().unwrap(),
             r#"{"format":"fluxloom-atom","version":1,"name":"40K","own":{"D1.dipole_au":{"value":4.1075,"source":"us"}}}"#
         );
         assert_eq!(format!("{own:?}"), r#"Atom("40K", D1.dipole_au = 4.1075)"#);
@@ -99,7 +99,7 @@ mod tests {
         let number =
             |name: &str, value: &str| format!(r#""{name}":{{"value":{value},"source":"us"}}"#);
         let good = number("g_j", "2.0");
-        assert!(serde_json::from_str::<Atom>(&written(1, "fluxloom-atom", "40K", &good)).is_ok());
+        assert!(Atom::from_json(&written(1, "fluxloom-atom", "40K", &good)).is_ok());
         let twice = format!("{good},{good}");
         let pair =
             format!("{},{}", number("D1.dipole_au", "4.1"), number("D1.lifetime_s", "26e-9"));
@@ -114,7 +114,7 @@ mod tests {
             (written(1, "fluxloom-atom", "40K", r#""g_j":{"value":2.0,"source":""}"#), "source"),
             (r#"{"format":"fluxloom-atom","version":1,"name":"40K"}"#.to_owned(), "own"),
         ] {
-            let error = serde_json::from_str::<Atom>(&text).unwrap_err().to_string();
+            let error = Atom::from_json(&text).unwrap_err().to_string();
             assert!(error.contains(part), "{text}: {error}");
         }
     }

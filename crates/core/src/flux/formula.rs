@@ -42,7 +42,16 @@ impl RamanPair {
     /// Flux per plaquette on a lattice: signed, unfolded, in flux quanta.
     #[must_use]
     pub fn flux(&self, lattice: &Lattice) -> f64 {
-        self.wavenumber_along_per_nm(lattice.direction()) * lattice.spacing_nm()
+        let (tuned, held) = self.flux_parts(lattice);
+        tuned + held
+    }
+
+    /// The flux in two parts: what goes as 1/wavelength when the light is tuned,
+    /// and what a second beam with a wavelength of its own holds.
+    #[must_use]
+    pub fn flux_parts(&self, lattice: &Lattice) -> (f64, f64) {
+        let (tuned, held) = self.wavenumbers_along(lattice.direction());
+        (tuned * lattice.spacing_nm(), held * lattice.spacing_nm())
     }
 
     /// Momentum kick along the lattice in units of k_L: twice the flux.

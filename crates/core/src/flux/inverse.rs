@@ -4,6 +4,7 @@ use serde::{Deserialize, Serialize};
 
 use crate::control::Control;
 use crate::degrees::{cos_deg, sin_deg};
+use crate::documents::Document;
 use crate::error::Error;
 use crate::flux::formula::{FluxInput, flux};
 use crate::lattice::{Lattice, Transfer};
@@ -18,7 +19,7 @@ const EDGE: f64 = 1e-12;
 
 /// One setting that reaches the target.
 #[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(try_from = "RawSolution")]
 pub struct Solution {
     /// Raman vacuum wavelength.
     pub wavelength_nm: f64,
@@ -34,6 +35,36 @@ pub struct Solution {
     pub sense: Sense,
     /// O_0 of the kick: what is left of the Raman coupling.
     pub kick_overlap: f64,
+}
+
+impl Document for Solution {
+    const FORMAT: &'static str = "fluxloom-solution";
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawSolution {
+    wavelength_nm: f64,
+    angle_deg: f64,
+    tilt_deg: f64,
+    flux: f64,
+    branch: i64,
+    sense: Sense,
+    kick_overlap: f64,
+}
+
+impl TryFrom<RawSolution> for Solution {
+    type Error = Error;
+
+    fn try_from(raw: RawSolution) -> Result<Self, Error> {
+        let RawSolution { wavelength_nm, angle_deg, tilt_deg, flux, branch, sense, kick_overlap } =
+            raw;
+        limits::WAVELENGTH_NM.check(wavelength_nm)?;
+        limits::RAMAN_ANGLE_DEG.check(angle_deg)?;
+        limits::TILT_DEG.check(tilt_deg)?;
+        limits::FLUX.check(flux)?;
+        Ok(Self { wavelength_nm, angle_deg, tilt_deg, flux, branch, sense, kick_overlap })
+    }
 }
 
 /// Where to look for wavelengths.

@@ -4,6 +4,7 @@ use ndarray::Array2;
 use serde::{Deserialize, Serialize};
 
 use crate::control::{self, Control};
+use crate::documents::Document;
 use crate::error::Error;
 use crate::lattice::batch::solve;
 use crate::lattice::bloch::index;
@@ -41,14 +42,13 @@ pub struct Bands {
 /// Below this width the tunnelling series is more accurate than the band edges.
 const FLAT_ER: f64 = 1e-5;
 
-/// What the serialised form is called.
-const FORMAT: &str = "fluxloom-bands";
+impl Document for Bands {
+    const FORMAT: &'static str = "fluxloom-bands";
+}
 
 #[derive(Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 struct RawBands {
-    format: String,
-    version: u32,
     lattice: Lattice,
     quasimomenta: Vec<f64>,
     energies_er: Vec<Vec<f64>>,
@@ -59,7 +59,6 @@ impl TryFrom<RawBands> for Bands {
     type Error = Error;
 
     fn try_from(raw: RawBands) -> Result<Self, Error> {
-        crate::error::check_format(FORMAT, &raw.format, raw.version)?;
         let input = BandsInput { count: raw.energies_er.len(), points: raw.quasimomenta.len() };
         check_input(input)?;
         let flat: Vec<f64> = raw.energies_er.iter().flatten().copied().collect();
@@ -80,8 +79,6 @@ impl TryFrom<RawBands> for Bands {
 impl From<Bands> for RawBands {
     fn from(bands: Bands) -> Self {
         Self {
-            format: FORMAT.to_owned(),
-            version: 1,
             energies_er: bands.energies_er.rows().into_iter().map(|row| row.to_vec()).collect(),
             lattice: bands.lattice,
             quasimomenta: bands.quasimomenta,
@@ -126,7 +123,7 @@ impl Lattice {
     pub fn bands(&self, input: BandsInput, control: &dyn Control) -> Result<Bands, Error> {
         check_input(input)?;
         let quasimomenta = zone_edges_included(input.points);
-        let mut energies = vec![0.0; input.points * input.count];
+        let mut energies = control::zeros(input.points * input.count)?;
         solve(self.depth_er(), &quasimomenta, input.count, &mut energies, control)?;
         let energies_er = Array2::from_shape_fn((input.count, input.points), |(band, point)| {
             energies.get(point * input.count + band).copied().unwrap_or_default()

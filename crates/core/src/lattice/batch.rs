@@ -66,13 +66,12 @@ pub fn band_energies_er(grid: BandGrid<'_>, control: &dyn Control) -> Result<Arr
     check_each(quasimomenta, limits::QUASIMOMENTUM, "quasimomenta")?;
     control::allow_numbers(&[depths_er.len(), quasimomenta.len(), count], 8)?;
     let shape = (depths_er.len(), quasimomenta.len(), count);
-    let mut energies = Array3::zeros(shape);
     let width = quasimomenta.len() * count;
     if width == 0 || depths_er.is_empty() {
-        return Ok(energies);
+        return Ok(Array3::zeros(shape));
     }
+    let mut energies = control::zeros(depths_er.len() * width)?;
     let halves = HalfOctaves::prepare(&grid, control)?;
-    let rows = energies.as_slice_mut().unwrap_or_default();
     let task = |(chunk, rows): (usize, &mut [f64])| -> Result<(), Error> {
         control::go_on(control)?;
         control.progress(chunk * ROWS_PER_TASK, depths_er.len());
@@ -82,9 +81,10 @@ pub fn band_energies_er(grid: BandGrid<'_>, control: &dyn Control) -> Result<Arr
         }
         Ok(())
     };
-    for_each_chunk(rows, width * ROWS_PER_TASK, task)?;
+    for_each_chunk(&mut energies, width * ROWS_PER_TASK, task)?;
     control.progress(depths_er.len(), depths_er.len());
-    Ok(energies)
+    // The shape fits by construction.
+    Ok(Array3::from_shape_vec(shape, energies).unwrap_or_default())
 }
 
 fn check_each(values: &[f64], limit: limits::Limit, field: &str) -> Result<(), Error> {
@@ -174,7 +174,7 @@ impl HalfOctaves {
             .collect();
         let width = grid.quasimomenta.len() * grid.count;
         control::allow_numbers(&[worth.len(), NODES, width], 8)?;
-        let mut table = vec![0.0; worth.len() * NODES * width];
+        let mut table = control::zeros(worth.len() * NODES * width)?;
         for_each_chunk(&mut table, width, |(place, row)| {
             control::go_on(control)?;
             if let Some(half_octave) = worth.get(place / NODES) {

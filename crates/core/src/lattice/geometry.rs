@@ -7,6 +7,7 @@ use serde::{Deserialize, Serialize};
 
 use crate::atom::Atom;
 use crate::constants::PLANCK_J_S;
+use crate::documents::Document;
 use crate::error::Error;
 use crate::limits;
 use crate::vector;
@@ -46,14 +47,13 @@ pub struct Lattice {
     direction: [f64; 3],
 }
 
-/// What the serialised form of a lattice is called.
-const FORMAT: &str = "fluxloom-lattice";
+impl Document for Lattice {
+    const FORMAT: &'static str = "fluxloom-lattice";
+}
 
 #[derive(Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 struct RawLattice {
-    format: String,
-    version: u32,
     wavelength_nm: f64,
     depth_er: f64,
     angle_deg: f64,
@@ -64,8 +64,7 @@ impl TryFrom<RawLattice> for Lattice {
     type Error = Error;
 
     fn try_from(raw: RawLattice) -> Result<Self, Error> {
-        crate::error::check_format(FORMAT, &raw.format, raw.version)?;
-        let RawLattice { wavelength_nm, depth_er, angle_deg, axis, .. } = raw;
+        let RawLattice { wavelength_nm, depth_er, angle_deg, axis } = raw;
         Self::new(LatticeInput { wavelength_nm, depth_er, angle_deg, axis })
     }
 }
@@ -73,7 +72,7 @@ impl TryFrom<RawLattice> for Lattice {
 impl From<Lattice> for RawLattice {
     fn from(lattice: Lattice) -> Self {
         let Lattice { wavelength_nm, depth_er, angle_deg, axis, .. } = lattice;
-        Self { format: FORMAT.to_owned(), version: 1, wavelength_nm, depth_er, angle_deg, axis }
+        Self { wavelength_nm, depth_er, angle_deg, axis }
     }
 }
 

@@ -87,7 +87,7 @@ impl Lattice {
         control: &dyn Control,
     ) -> Result<Vec<f64>, Error> {
         control::allow_numbers(&[kicks.len()], 16)?;
-        let mut overlaps = vec![0.0; kicks.len()];
+        let mut overlaps = control::zeros(kicks.len())?;
         for_each_chunk(&mut overlaps, 1, |(place, overlap)| {
             control::go_on(control)?;
             if let (Some(kick), [overlap]) = (kicks.get(place), overlap) {

@@ -7,6 +7,7 @@
 use serde::{Deserialize, Serialize};
 
 use crate::control::{self, Control};
+use crate::documents::Document;
 use crate::error::Error;
 use crate::lattice::batch::for_each_chunk;
 use crate::lattice::bloch::{BlochState, bloch_states, index, zone, zone_points};
@@ -33,7 +34,7 @@ impl Default for WannierInput {
 
 /// A Wannier function on a symmetric grid.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(try_from = "RawWannier")]
 pub struct Wannier {
     /// Band, counted from 0.
     pub band: usize,
@@ -41,6 +42,38 @@ pub struct Wannier {
     pub x_nm: Vec<f64>,
     /// w(x), real, per square root of a nanometre: amplitude^2 over `x_nm` integrates to 1.
     pub amplitude: Vec<f64>,
+}
+
+impl Document for Wannier {
+    const FORMAT: &'static str = "fluxloom-wannier";
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawWannier {
+    band: usize,
+    x_nm: Vec<f64>,
+    amplitude: Vec<f64>,
+}
+
+impl TryFrom<RawWannier> for Wannier {
+    type Error = Error;
+
+    fn try_from(raw: RawWannier) -> Result<Self, Error> {
+        let RawWannier { band, x_nm, amplitude } = raw;
+        check_band(band, "band")?;
+        if x_nm.len() != amplitude.len() || x_nm.is_empty() {
+            return Err(Error::Contradiction {
+                code: "file.wrong_shape",
+                message: format!(
+                    "x_nm holds {} numbers and amplitude {}: they must hold as many, at least one",
+                    x_nm.len(),
+                    amplitude.len()
+                ),
+            });
+        }
+        Ok(Self { band, x_nm, amplitude })
+    }
 }
 
 /// Positions handled between two looks at the control.
@@ -55,7 +88,7 @@ fn tabulate(
 ) -> Result<Vec<f64>, Error> {
     let weight = 1.0 / index(states.len());
     let wave = if band.is_multiple_of(2) { f64::cos } else { f64::sin };
-    let mut values = vec![0.0; positions.len()];
+    let mut values = control::zeros(positions.len())?;
     for_each_chunk(&mut values, POSITIONS_PER_TASK, |(task, values)| {
         control::go_on(control)?;
         for (value, x) in values.iter_mut().zip(positions.iter().skip(task * POSITIONS_PER_TASK)) {

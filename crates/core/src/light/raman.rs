@@ -6,7 +6,8 @@
 use serde::{Deserialize, Serialize};
 
 use crate::degrees::{cos_deg, sin_deg};
-use crate::error::{Error, check_format};
+use crate::documents::Document;
+use crate::error::Error;
 use crate::limits;
 use crate::vector::{self, dot};
 
@@ -48,13 +49,13 @@ enum Form {
     Directions(Directions),
 }
 
-const FORMAT: &str = "fluxloom-raman-pair";
+impl Document for RamanPair {
+    const FORMAT: &'static str = "fluxloom-raman-pair";
+}
 
 #[derive(Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 struct RawPair {
-    format: String,
-    version: u32,
     #[serde(skip_serializing_if = "Option::is_none", default)]
     wavelength_nm: Option<f64>,
     #[serde(skip_serializing_if = "Option::is_none", default)]
@@ -76,7 +77,6 @@ impl TryFrom<RawPair> for RamanPair {
     type Error = Error;
 
     fn try_from(raw: RawPair) -> Result<Self, Error> {
-        check_format(FORMAT, &raw.format, raw.version)?;
         let pair = match raw {
             RawPair {
                 wavelength_nm: Some(wavelength_nm),
@@ -121,8 +121,6 @@ impl From<RamanPair> for RawPair {
         let crossing = pair.as_crossing();
         let directions = pair.as_directions();
         Self {
-            format: FORMAT.to_owned(),
-            version: 1,
             wavelength_nm: crossing.map(|c| c.wavelength_nm),
             angle_deg: crossing.map(|c| c.angle_deg),
             tilt_deg: crossing.map(|c| c.tilt_deg),
@@ -205,6 +203,7 @@ impl RamanPair {
     }
 
     /// Wavelength of the light: that of the absorbed beam where there are two.
+    /// A second beam with a wavelength of its own stays when this one is tuned.
     #[must_use]
     pub fn leading_wavelength_nm(&self) -> f64 {
         match self.form {
@@ -213,13 +212,13 @@ impl RamanPair {
         }
     }
 
-    /// The component of the kick along a unit vector, over 2 pi: wave numbers
-    /// per nanometre. For a crossing pair the axis is already in its tilt.
-    #[must_use]
-    pub fn wavenumber_along_per_nm(&self, axis: [f64; 3]) -> f64 {
-        let wavenumber = match self.form {
+    /// The kick along a unit vector over 2 pi, in wave numbers per nanometre, in
+    /// two parts: what goes as 1/[`RamanPair::leading_wavelength_nm`], and what
+    /// stays when that is tuned (a second beam with a wavelength of its own).
+    pub(crate) fn wavenumbers_along(&self, axis: [f64; 3]) -> (f64, f64) {
+        let (tuned, held) = match self.form {
             Form::Crossing(Crossing { wavelength_nm, angle_deg, tilt_deg }) => {
-                2.0 * sin_deg(0.5 * angle_deg) * cos_deg(tilt_deg) / wavelength_nm
+                (2.0 * sin_deg(0.5 * angle_deg) * cos_deg(tilt_deg) / wavelength_nm, 0.0)
             }
             Form::Directions(directions) => {
                 let along = |vector: [f64; 3], wavelength_nm: f64| {
@@ -227,12 +226,15 @@ impl RamanPair {
                         / wavelength_nm
                 };
                 let absorb_nm = directions.absorb_wavelength_nm;
-                let emit_nm = directions.emit_wavelength_nm.unwrap_or(absorb_nm);
-                along(directions.absorb, absorb_nm)
-                    - directions.emit.map_or(0.0, |emit| along(emit, emit_nm))
+                let absorbed = along(directions.absorb, absorb_nm);
+                match (directions.emit, directions.emit_wavelength_nm) {
+                    (None, _) => (absorbed, 0.0),
+                    (Some(emit), None) => (absorbed - along(emit, absorb_nm), 0.0),
+                    (Some(emit), Some(emit_nm)) => (absorbed, -along(emit, emit_nm)),
+                }
             }
         };
-        if self.swapped { -wavenumber } else { wavenumber }
+        if self.swapped { (-tuned, -held) } else { (tuned, held) }
     }
 
     /// The same beams crossing at another angle; none for beams given by directions
@@ -241,24 +243,5 @@ impl RamanPair {
     pub fn with_angle_deg(&self, angle_deg: f64) -> Option<Self> {
         let crossing = Crossing { angle_deg, ..self.as_crossing()? };
         Self::crossing(crossing).ok().map(|pair| Self { swapped: self.swapped, ..pair })
-    }
-
-    /// The same geometry with all wavelengths multiplied by a factor.
-    ///
-    /// # Errors
-    /// [`Error::OutOfRange`] if a wavelength leaves its range.
-    pub fn scaled_wavelength(&self, factor: f64) -> Result<Self, Error> {
-        let pair = match self.form {
-            Form::Crossing(crossing) => Self::crossing(Crossing {
-                wavelength_nm: crossing.wavelength_nm * factor,
-                ..crossing
-            })?,
-            Form::Directions(directions) => Self::from_directions(Directions {
-                absorb_wavelength_nm: directions.absorb_wavelength_nm * factor,
-                emit_wavelength_nm: directions.emit_wavelength_nm.map(|w| w * factor),
-                ..directions
-            })?,
-        };
-        Ok(Self { swapped: self.swapped, ..pair })
     }
 }

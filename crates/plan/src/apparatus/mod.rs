@@ -56,7 +56,7 @@ impl Apparatus {
     /// [`Error::System`] if the file cannot be read, [`Error::Faults`] with
     /// everything that is wrong with it.
     pub fn load(path: &Path) -> Result<Self, Error> {
-        let text = files::read_text(path)?;
+        let text = files::read_text(path, files::MOST_BYTES)?;
         let name = files::name_of(path);
         if is_json(path) {
             return Self::read_json(&text, Some(&name));

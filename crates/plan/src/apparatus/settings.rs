@@ -1,5 +1,7 @@
 //! Settings by their paths, in the kind that is asked for.
 
+use fluxloom_core::Document;
+use serde::{Deserialize, Serialize};
 use serde_json::Value;
 
 use super::keys::{self, Found, Spread, Standard};
@@ -9,7 +11,8 @@ use crate::Error;
 use crate::files::{Node, path};
 
 /// A number with what is known about it.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
 pub struct Measured {
     /// The value, in the unit of the key.
     pub value: f64,
@@ -19,6 +22,10 @@ pub struct Measured {
     pub data: Option<String>,
     /// The day of the measurement, as written, if stated.
     pub measured: Option<String>,
+}
+
+impl Document for Measured {
+    const FORMAT: &'static str = "fluxloom-measured";
 }
 
 /// Where a value comes from.

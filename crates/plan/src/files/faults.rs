@@ -1,12 +1,22 @@
 //! A collection of faults: everything wrong with an input, told at once.
 
+use std::collections::BTreeSet;
+
 use fluxloom_core::fault::{Fault, suggest};
 
+use super::path;
 use crate::Error;
 
 /// Faults that are kept one by one; nobody reads more, and a wrong file of the
 /// largest size would give a hundred thousand.
 const MOST: usize = 1000;
+
+/// Names that are looked through for suggestions, all faults together: it is
+/// far more than a real file needs, and measuring distances takes time.
+const MOST_COMPARED: usize = 200_000;
+
+/// The longest message, in bytes; what is longer repeats the user's own words.
+const MOST_BYTES: usize = 4000;
 
 /// The candidate that was probably meant: the one that only lacks its unit, or a near miss.
 pub fn nearest<'a>(found: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
@@ -24,9 +34,10 @@ pub fn nearest<'a>(found: &str, known: impl IntoIterator<Item = &'a str>) -> Opt
 /// Whether faults carry the lines of the nodes they are found at.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Lines {
-    /// The input is a file or a text with lines.
+    /// The input is a file or a text with lines, in which texts have quotes.
     Shown,
-    /// The input is a value: places are paths only.
+    /// The input is a value of a program: places are paths only, and nothing is
+    /// known of how it was written.
     Hidden,
 }
 
@@ -37,13 +48,78 @@ pub struct Faults {
     lines: Lines,
     list: Vec<Fault>,
     left_out: usize,
+    /// Places that were written under another name.
+    meant: BTreeSet<String>,
+    /// Whether all of the input was read.
+    whole: bool,
+    compared: usize,
 }
 
 impl Faults {
     /// An empty collection for an input that comes from `file`, if it has a name.
     #[must_use]
     pub fn new(file: Option<&str>, lines: Lines) -> Self {
-        Self { file: file.map(str::to_owned), lines, list: Vec::new(), left_out: 0 }
+        Self {
+            file: file.map(str::to_owned),
+            lines,
+            list: Vec::new(),
+            left_out: 0,
+            meant: BTreeSet::new(),
+            whole: true,
+            compared: 0,
+        }
+    }
+
+    /// Whether the input is a text, so that messages may speak of quotes.
+    #[must_use]
+    pub fn is_text(&self) -> bool {
+        self.lines == Lines::Shown
+    }
+
+    /// Notes that a part of the input could not be read: what seems to be
+    /// missing may stand there.
+    pub fn leave_unread(&mut self) {
+        self.whole = false;
+    }
+
+    /// Whether what is missing is missing, and not only unread.
+    #[must_use]
+    pub fn is_whole(&self) -> bool {
+        self.whole
+    }
+
+    /// Notes that what should stand at `path` stands there under another name,
+    /// which has been reported.
+    pub fn expect(&mut self, path: String) {
+        self.meant.insert(path);
+    }
+
+    /// Whether what should stand at `path` was written under another name.
+    #[must_use]
+    pub fn expects(&self, path: &str) -> bool {
+        self.meant.contains(path)
+    }
+
+    /// Whether one more fault would only be counted: then its words are not needed.
+    #[must_use]
+    pub fn is_full(&self) -> bool {
+        self.list.len() >= MOST
+    }
+
+    /// The candidate that was probably meant, as [`nearest`], within what all
+    /// suggestions of one input may cost.
+    pub fn suggest<'a>(
+        &mut self,
+        found: &str,
+        known: impl IntoIterator<Item = &'a str>,
+    ) -> Option<&'a str> {
+        if self.is_full() {
+            return None;
+        }
+        let left = MOST_COMPARED.saturating_sub(self.compared);
+        let known: Vec<&str> = known.into_iter().take(left).collect();
+        self.compared += known.len();
+        nearest(found, known)
     }
 
     /// Adds a fault; the same one twice is kept once.
@@ -60,7 +136,7 @@ impl Faults {
         message: String,
         (found, known): (&str, impl IntoIterator<Item = &'a str>),
     ) {
-        let meant = nearest(found, known).map(str::to_owned);
+        let meant = self.suggest(found, known).map(str::to_owned);
         self.add_meant(code, line, path, message, meant);
     }
 
@@ -73,12 +149,24 @@ impl Faults {
         message: String,
         did_you_mean: Option<String>,
     ) {
+        let shown = path::short(path);
+        let mut message = message;
+        if shown.len() < path.len() {
+            message = message.replace(path, &shown);
+        }
+        if message.len() > MOST_BYTES {
+            message.truncate(message.floor_char_boundary(MOST_BYTES));
+            message.push_str("...");
+        }
+        let path = &*shown;
         let line = if self.lines == Lines::Shown { line } else { None };
-        let same = |f: &Fault| f.code == code && f.path == path && f.message == message;
+        let same = |f: &Fault| {
+            f.line == line && f.code == code && f.path == path && f.message == message
+        };
         if self.list.iter().any(same) {
             return;
         }
-        if self.list.len() >= MOST {
+        if self.is_full() {
             self.left_out += 1;
             return;
         }
@@ -116,6 +204,11 @@ impl Faults {
     }
 
     /// The faults found so far, in the order found.
+    pub fn iter(&self) -> impl Iterator<Item = &Fault> {
+        self.list.iter()
+    }
+
+    /// As [`Faults::iter`], to be changed.
     pub fn iter_mut(&mut self) -> impl Iterator<Item = &mut Fault> {
         self.list.iter_mut()
     }

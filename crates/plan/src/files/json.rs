@@ -12,7 +12,10 @@ use super::{Faults, MOST_BYTES, disk, path};
 /// could not be read at all.
 pub fn read_json(text: &str, faults: &mut Faults) -> Option<Value> {
     if text.len() > MOST_BYTES {
-        faults.add("file.too_large", None, "", disk::too_large());
+        faults.add("file.too_large", None, "", disk::too_large(disk::MOST_BYTES));
+        return None;
+    }
+    if disk::refuse_zeros(text, faults) {
         return None;
     }
     let text = text.strip_prefix('\u{feff}').unwrap_or(text);

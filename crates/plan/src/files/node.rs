@@ -108,12 +108,13 @@ impl Node {
             Data::Whole(whole) => format!("the number {whole}"),
             Data::Number(number) => format!("the number {}", fluxloom_core::limits::plain(*number)),
             Data::Text(text) => format!("the text \"{}\"", shortened(text)),
-            Data::Date(date) => format!("the date {date}"),
+            Data::Date(time) if !time.contains('-') => format!("the time {}", shortened(time)),
+            Data::Date(date) => format!("the date {}", shortened(date)),
             Data::List(list) if list.is_empty() => "an empty list".to_owned(),
             Data::List(list) => format!("a list of {}", list.len()),
             Data::Tables(_) => "an array of tables".to_owned(),
             Data::Table(_) => "a table".to_owned(),
-            Data::Null => "null".to_owned(),
+            Data::Null => "nothing".to_owned(),
             Data::Unreadable => "something unreadable".to_owned(),
         }
     }
@@ -130,8 +131,12 @@ impl Node {
                 one.len() == two.len() && one.iter().zip(two).all(|(a, b)| a.same(b))
             }
             (Data::Table(one), Data::Table(two)) => {
-                one.len() == two.len()
-                    && one.iter().all(|e| other.get(&e.key).is_some_and(|node| e.node.same(node)))
+                // Usually the order is the same, and no key has to be looked for.
+                let facing = |(here, there): (&Entry, &Entry)| {
+                    let node = if here.key == there.key { Some(&there.node) } else { None };
+                    node.or_else(|| other.get(&here.key)).is_some_and(|node| here.node.same(node))
+                };
+                one.len() == two.len() && one.iter().zip(two).all(facing)
             }
             _ => self.number().is_some() && self.number() == other.number(),
         }

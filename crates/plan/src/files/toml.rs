@@ -1,132 +1,74 @@
-//! TOML into a tree with lines.
-//!
-//! A parser stops at the first broken line. So that one comma does not hide the
-//! other faults of a file, a broken line that is one `key = value` by itself is
-//! reported, set aside and the rest is read on.
+//! TOML into a tree with lines. What cannot be read is reported and set aside,
+//! see [`super::mend`].
 
 use std::collections::BTreeSet;
 
-use toml_edit::{Document, Item, TableLike, TomlError, Value};
+use toml_edit::{Document, Item, TableLike, Value};
 
-use super::{Data, Entry, Faults, MOST_BYTES, Node, disk, path};
+use super::{Data, Entry, Faults, MOST_BYTES, Node, disk, mend};
 
-/// Broken lines that are set aside before reading stops.
-const MOST_MENDED: usize = 50;
-
-/// The tree of a TOML text. Faults go into `faults`; without a tree the text
-/// could not be read at all.
+/// The tree of a TOML text. Faults go into `faults`; without a tree nothing of
+/// the text could be read.
 pub fn read_toml(text: &str, faults: &mut Faults) -> Option<Node> {
     if text.len() > MOST_BYTES {
-        faults.add("file.too_large", None, "", disk::too_large());
+        faults.add("file.too_large", None, "", disk::too_large(disk::MOST_BYTES));
         return None;
     }
-    let mut text = text.strip_prefix('\u{feff}').unwrap_or(text).to_owned();
-    let mut unreadable = BTreeSet::new();
-    for _ in 0..=MOST_MENDED {
-        let error = match Document::parse(text.as_str()) {
-            Ok(document) => return Some(Tree::new(&text, &unreadable).root(document.as_table())),
-            Err(error) => error,
-        };
-        let broken = Broken::find(&text, &error);
-        // Each line gets one chance; twice the same line is not mended by setting it aside.
-        let mended = broken.mended(&text).filter(|_| unreadable.insert(broken.number));
-        broken.report(&error, mended.is_some(), faults);
-        text = mended?;
+    if disk::refuse_zeros(text, faults) {
+        return None;
     }
-    None
+    let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+    if let Ok(document) = Document::parse(text) {
+        return Some(Tree::new(text, &BTreeSet::new()).root(document.as_table()));
+    }
+    let mended = mend::mend(text, faults);
+    let document = Document::parse(mended.text.as_str()).ok()?;
+    let mut root = Tree::new(&mended.text, &mended.unreadable).root(document.as_table());
+    for (name, place) in &mended.moved {
+        move_table(&mut root, name, place.as_deref());
+    }
+    Some(root)
 }
 
-/// A line that the parser could not read.
-struct Broken<'a> {
-    /// Its number, from 1.
-    number: usize,
-    /// Bytes before it.
-    start: usize,
-    line: &'a str,
-    /// The key before the equals sign, if the line has the shape `key = value`.
-    key: Option<&'a str>,
-    /// The table in whose part of the file it stands.
-    table: &'a str,
-    /// Whether the parser found the same key twice.
-    twice: Option<bool>,
+/// Puts a table that was read under another name where it belongs, beside what
+/// stands there already: a second `[cloud]` is checked as the first one is.
+fn move_table(root: &mut Node, name: &str, place: Option<&[String]>) {
+    let Data::Table(entries) = &mut root.data else { return };
+    let Some(index) = entries.iter().position(|entry| entry.key == name) else { return };
+    let moved = entries.remove(index).node;
+    if let Some(place) = place {
+        put(root, place, moved);
+    }
 }
 
-impl<'a> Broken<'a> {
-    fn find(text: &'a str, error: &TomlError) -> Self {
-        let at = error.span().map_or(0, |span| span.start).min(text.len());
-        let before = text.get(..text.floor_char_boundary(at)).unwrap_or("");
-        let start = before.rfind('\n').map_or(0, |newline| newline + 1);
-        let line = text.get(start..).unwrap_or("").lines().next().unwrap_or("");
-        let head = text.get(..start).unwrap_or("");
-        let table = head.lines().rev().find_map(|line| line.trim_start().strip_prefix('['));
-        let table = table.and_then(|rest| rest.split(']').next()).unwrap_or("");
-        let indent = line.len() - line.trim_start().len();
-        let twice = error.message().starts_with("duplicate key");
-        Self {
-            number: head.matches('\n').count() + 1,
-            start,
-            line,
-            key: key_of(line),
-            table: table.trim_matches(['[', ' ', '\t']),
-            twice: twice.then_some(at == start + indent),
+fn put(parent: &mut Node, place: &[String], moved: Node) {
+    let Data::Table(entries) = &mut parent.data else { return };
+    let Some((key, below)) = place.split_first() else {
+        if let Data::Table(more) = moved.data {
+            merge(entries, more);
+        }
+        return;
+    };
+    if let Some(entry) = entries.iter_mut().find(|entry| entry.key == *key) {
+        return put(&mut entry.node, below, moved);
+    }
+    let mut node = Node { line: moved.line, data: Data::Table(Vec::new()) };
+    put(&mut node, below, moved);
+    entries.push(Entry { key: key.clone(), node });
+}
+
+/// Adds entries; of a value that is given twice both stay, so that both are checked.
+fn merge(entries: &mut Vec<Entry>, more: Vec<Entry>) {
+    for entry in more {
+        let same = entries.iter_mut().find(|old| old.key == entry.key);
+        match (same.map(|old| &mut old.node.data), entry.node.data) {
+            (Some(Data::Table(old)), Data::Table(new)) => merge(old, new),
+            (_, data) => {
+                let node = Node { line: entry.node.line, data };
+                entries.push(Entry { key: entry.key, node });
+            }
         }
     }
-
-    fn report(&self, error: &TomlError, goes_on: bool, faults: &mut Faults) {
-        let path = match self.key {
-            Some(key) if self.table.is_empty() => key.to_owned(),
-            Some(key) => format!("{}.{key}", self.table),
-            None => String::new(),
-        };
-        let shown: String = self.line.trim().chars().take(80).collect();
-        let rest = if goes_on { "" } else { " (what follows was not read)" };
-        if self.twice.is_some() {
-            let message = format!("`{shown}` gives a name a second time: keep one{rest}");
-            return faults.add("file.duplicate_key", Some(self.number), &path, message);
-        }
-        let hint = if self.has_decimal_comma() {
-            "; numbers are written with a point, not a comma"
-        } else {
-            ""
-        };
-        let message = format!("`{shown}` is not TOML: {}{hint}{rest}", error.message());
-        faults.add("file.syntax", Some(self.number), &path, message);
-    }
-
-    fn has_decimal_comma(&self) -> bool {
-        let value = self.line.split_once('=').map_or("", |(_, value)| value);
-        let value = value.split('#').next().unwrap_or("").trim();
-        value.split_once(',').is_some_and(|(whole, part)| {
-            let digits = |text: &str| text.chars().all(|c| c.is_ascii_digit());
-            digits(whole.trim_start_matches(['-', '+'])) && !part.is_empty() && digits(part)
-        })
-    }
-
-    /// The text without this line, if that leaves everything else as it was meant.
-    fn mended(&self, text: &str) -> Option<String> {
-        let key = self.key?;
-        let before = text.get(..self.start)?;
-        let after = text.get(self.start + self.line.len()..)?;
-        // Only if what stands before is whole is this a line by itself.
-        Document::parse(before).ok()?;
-        let stand_in = match self.twice {
-            Some(true) => String::new(),
-            _ => format!("{key} = 0"),
-        };
-        Some(format!("{before}{stand_in}{after}"))
-    }
-}
-
-/// The key of a line `key = value` whose value does not go on in the next line.
-fn key_of(line: &str) -> Option<&str> {
-    let (key, value) = line.split_once('=')?;
-    let key = key.trim();
-    let count = |open: char| value.matches(open).count();
-    let whole = !value.contains("\"\"\"")
-        && !value.contains("'''")
-        && count('[') == count(']')
-        && count('{') == count('}');
-    (whole && key.split('.').all(path::is_bare)).then_some(key)
 }
 
 /// Builds nodes and counts lines.
@@ -239,18 +181,63 @@ mod tests {
     }
 
     #[test]
-    fn what_runs_over_several_lines_is_not_set_aside() {
-        for text in [
-            "a = [1\nb = 2\nc = 3\n",
-            "a = \"\"\"x\nb = 2\n",
-            "[t\na = 1\n",
-            "a = { b = 1\nc = 2\n",
+    fn what_is_not_closed_is_blamed_on_the_line_that_opens_it() {
+        for (text, line, word) in [
+            ("a = [1\nb = 2\nc = 3\n", 1, "list that is not closed"),
+            ("x = 1\na = \"\"\"x\nb = 2\n", 2, "three quotes"),
+            ("[t\nb = 2\n", 1, "is not TOML"),
+            ("a = { b = 1\nb = 2\n", 1, "braces"),
+            ("a = \"x\n[t]\nb = 2\n", 1, "without its partner"),
+            ("\na = [1,\n\"x,\n2]\nb = 2\n", 3, "without its partner"),
         ] {
             let (tree, faults) = read(text);
-            assert!(tree.is_none(), "{text:?}");
+            let tree = tree.unwrap();
             assert_eq!(faults.len(), 1, "{text:?} {faults:?}");
-            assert!(faults[0].message.contains("not read"));
+            assert_eq!((faults[0].line, faults[0].code.as_str()), (Some(line), "file.syntax"));
+            assert!(faults[0].message.contains(word), "{}", faults[0].message);
+            let b = tree.get("b").or_else(|| tree.find(&["t", "b"])).unwrap();
+            let place = 1 + text.lines().position(|line| line == "b = 2").unwrap();
+            assert_eq!((&b.data, b.line), (&Data::Whole(2), Some(place)));
         }
+    }
+
+    #[test]
+    fn an_earlier_fault_is_not_hidden_by_a_later_one() {
+        let (tree, faults) = read("a = \"x\nb = 1\nc = 1,5\nd 4\n= 5\n? = 6\ne = 7\n");
+        let lines: Vec<_> = faults.iter().map(|fault| fault.line).collect();
+        assert_eq!(lines, [Some(1), Some(3), Some(4), Some(5), Some(6)]);
+        assert!(faults[2].message.contains("key = value"), "{}", faults[2].message);
+        assert_eq!(tree.unwrap().get("e").unwrap().data, Data::Whole(7));
+    }
+
+    #[test]
+    fn a_table_with_two_headers_is_read_whole() {
+        let (tree, faults) = read("[t]\na = 1\n[u]\nb = 2\n[t]\na = 3\nc = 4\n[[u]]\nd = 5\n");
+        let tree = tree.unwrap();
+        let found: Vec<_> =
+            faults.iter().map(|f| (f.code.as_str(), f.path.as_str(), f.line)).collect();
+        assert_eq!(
+            found,
+            [("file.duplicate_key", "t", Some(5)), ("file.duplicate_key", "u", Some(8))]
+        );
+        assert!(faults[0].message.contains("first on line 1"), "{}", faults[0].message);
+        assert_eq!(tree.find(&["t", "a"]).unwrap().data, Data::Whole(1));
+        assert_eq!(tree.find(&["t", "c"]).unwrap().data, Data::Whole(4));
+        assert_eq!(tree.find(&["u", "d"]).unwrap().line, Some(9));
+        assert_eq!(tree.entries().len(), 2);
+        let (_, faults) = read("a = 1\nb = 2\na = 3\na.c = 4\n");
+        assert_eq!(faults.len(), 2);
+        assert!(faults.iter().all(|f| f.message.contains("first on line 1")), "{faults:?}");
+    }
+
+    #[test]
+    fn of_a_wrong_file_only_a_part_is_read() {
+        let mut text = "a = 1\n".to_owned();
+        text.push_str(&"def f(x):\n".repeat(200));
+        let (tree, faults) = read(&text);
+        assert_eq!(tree.unwrap().get("a").unwrap().data, Data::Whole(1));
+        assert_eq!(faults.len(), 51);
+        assert!(faults[50].message.contains("what follows was not read"));
     }
 
     #[test]
