@@ -37,7 +37,7 @@ lint: $(VENV)/tools
 # The extension module is tested from Python.
 test-rust:
 	cargo test $(CARGO_FLAGS) --exclude fluxloom-python
-	FLUXLOOM_CPU=baseline cargo test --release --locked -p fluxloom-kernel -p fluxloom-core --lib --tests
+	FLUXLOOM_CPU=baseline cargo test $(CARGO_FLAGS) --exclude fluxloom-python --lib --tests
 	cargo check --release --locked -p fluxloom-core --no-default-features
 
 test-python: wheel $(VENV)/tools

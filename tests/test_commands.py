@@ -81,7 +81,7 @@ def test_changes_that_move_other_settings_are_told(tmp_path: Path) -> None:
     file = tmp_path / "bay.toml"
     file.write_text(text, encoding="utf-8")
     done = run("check", str(file), "--target", "3/8", "--set", "lattice.depth_er=9", "--verbose")
-    assert "moved too: " in done.stdout
+    assert "note: lattice.depth_er 6 -> 9" in done.stdout
     assert "default: raman.tilt_deg = 0.0 (" in done.stdout
 
 

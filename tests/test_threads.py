@@ -140,8 +140,7 @@ LONG = {
     "band energies of one depth": "fl.band_energies_er(6.0, np.linspace(-1, 1, 2 * 10**7))",
     "kick overlaps": "lattice.kick_overlap(np.linspace(-3, 3, 10**7))",
     "bands": "[lattice.bands(count=32, points=10**6) for _ in range(100)]",
-    "wannier": "lattice.wannier(points_per_site=4096, sites=1000)",
-    "onsite integral": "lattice.replace(depth_er=0.01).onsite_integral()",
+    "wannier": "lattice.replace(depth_er=6e-4).wannier(points_per_site=4096, sites=900)",
     "wavelengths": "[fl.raman_wavelengths('1/3', wide, range_nm=(100, 101)) for _ in range(100)]",
 }
 INTERRUPTED = """

@@ -181,7 +181,7 @@ def check_apparatus(options: argparse.Namespace) -> tuple[fl.FluxCheck, Answer]:
     answer.document["cautions"] = [
         {"code": caution.code, "text": caution.text} for caution in apparatus.cautions
     ]
-    answer.notes += [f"moved too: {change}" for change in apparatus.changes]
+    answer.notes += [f"note: {change}" for change in apparatus.changes]
     answer.notes += [f"caution: {caution}" for caution in apparatus.cautions]
     if options.verbose:
         defaults = apparatus.defaults()

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Literal, TypeAlias
 
 import numpy as np
 
-from fluxloom import Atom, Bands, FluxCheck, NumericalError, Wannier
+from fluxloom import Atom, Bands, FluxCheck, Wannier
 from fluxloom.displays import MEETS, MISSES
 from fluxloom.flux_plane import Branch, FluxPlane
 from fluxloom.wording import PLUS_MINUS, rad, scientific, signed_sum, spread, target, two_digits
@@ -113,19 +113,15 @@ def _gap(bands: Bands, ax: "Axes", lower: int, edges_er: tuple[float, float]) ->
 
 def _lowest_band(bands: Bands, ax: "Axes", atom: Atom | None) -> None:
     """Write the tunnelling, and draw the lowest band in its units beside hopping alone."""
-    try:
-        mean, near, far = (bands.lattice.tunnelling_er(reach=reach) for reach in (0, 1, 2))
-        words = f"$t$ = {scientific(f'{near:.3g}')} $E_R$\n"
-    except NumericalError:
-        near, words = 0.0, "too close to free motion\nfor a hopping model"
-    else:
-        if atom is not None:
-            words += f"   = {bands.lattice.tunnelling_hz(atom):.4g} Hz ({atom.name})\n"
-        words += f"$t_2/t$ = {scientific(f'{far / near:.2g}')}\n\n"
+    mean, near, far = (bands.lattice.tunnelling_er(reach=reach) for reach in (0, 1, 2))
+    words = f"$t$ = {scientific(f'{near:.3g}')} $E_R$\n"
+    if atom is not None:
+        words += f"   = {bands.lattice.tunnelling_hz(atom):.4g} Hz ({atom.name})\n"
+    words += f"$t_2/t$ = {scientific(f'{far / near:.2g}')}\n\n"
     # At the error of the energies the shape of the band is noise.
-    if 0.0 < near < 100.0 * bands.error_er:
+    if near < 100.0 * bands.error_er:
         words += "flat to the accuracy\nof its energies"
-    elif near > 0.0:
+    else:
         momenta = np.asarray(bands.quasimomenta)
         # The hop over no site is minus the mean.
         exact = (np.asarray(bands.energies_er)[0] + mean) / near

@@ -3,7 +3,9 @@
 /// sin of an angle in degrees.
 #[must_use]
 pub fn sin_deg(angle_deg: f64) -> f64 {
-    cos_deg(angle_deg - 90.0)
+    let turn = angle_deg % 360.0;
+    // Small angles keep their digits.
+    if turn.abs() < 45.0 { turn.to_radians().sin() } else { cos_deg(turn - 90.0) }
 }
 
 /// cos of an angle in degrees.
@@ -30,6 +32,7 @@ mod tests {
         assert_eq!(cos_deg(-270.0), 0.0);
         assert_eq!(sin_deg(90.0), 1.0);
         assert_eq!(sin_deg(180.0), 0.0);
+        assert_eq!(sin_deg(1e-9), 1e-9_f64.to_radians());
         assert_eq!(cos_deg(180.0), -1.0);
         for k in -720..720 {
             let angle = f64::from(k) * 0.77;

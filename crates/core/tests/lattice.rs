@@ -187,6 +187,42 @@ fn tunnelling_keeps_its_digits_in_deep_lattices() {
 }
 
 #[test]
+fn bands_that_all_but_touch() {
+    // Nearly free motion: E = q^2 unfolded, whose Fourier coefficients are closed
+    // forms: t_r = -(-1)^r 2/(pi r)^2 for the lowest band, up to terms of order s.
+    for reach in 1..5 {
+        let sign = if reach % 2 == 0 { -1.0 } else { 1.0 };
+        let expected = sign * 2.0 / (std::f64::consts::PI * f64::from(reach)).powi(2);
+        let found = lattice(1e-6).tunnelling_er(hop(reach, 0)).unwrap();
+        assert_near(found, expected, 1e-6, "free");
+    }
+    // Both ways of summing over the zone agree where both work.
+    for (depth_er, band) in [(0.2, 0), (3.0, 1), (9.0, 2), (16.0, 3)] {
+        let (hop1, hop2) = (hop(1, band), hop(2, band));
+        let energies = |q: &[f64]| {
+            let grid = BandGrid { depths_er: &[depth_er], quasimomenta: q, count: band + 1 };
+            band_energies_er(grid, &Unwatched).unwrap()
+        };
+        let points = 40_000;
+        let q: Vec<f64> = (0..points).map(|k| (f64::from(k) + 0.5) / f64::from(points)).collect();
+        let found = energies(&q);
+        for (hop, reach) in [(hop1, 1.0), (hop2, 2.0)] {
+            let sum: f64 = q
+                .iter()
+                .enumerate()
+                .map(|(k, q)| found[[0, k, band]] * (std::f64::consts::PI * reach * q).cos())
+                .sum();
+            let expected = -sum / f64::from(points);
+            assert_near(lattice(depth_er).tunnelling_er(hop).unwrap(), expected, 2e-9, "t");
+        }
+    }
+    // Free motion in the fourth band, E = (4 - q)^2, has t_1 = -14/pi^2.
+    let free = -14.0 / std::f64::consts::PI.powi(2);
+    assert_near(lattice(6.0).tunnelling_er(hop(1, 3)).unwrap(), free, 0.03, "band 3 at 6 E_R");
+    assert!(lattice(6.0).kick_overlap(0.75, Transfer { to_band: 3, ..Transfer::ON_SITE }).is_ok());
+}
+
+#[test]
 fn effective_mass_from_finite_differences_and_free_limit() {
     for depth_er in [0.3, 2.0, 6.0, 15.0] {
         let lattice = lattice(depth_er);
@@ -247,7 +283,8 @@ fn many_depths_agree_with_one_at_a_time() {
 
 #[test]
 fn hopeless_questions_are_refused() {
-    assert!(lattice(1e-4).tunnelling_er(hop(1, 0)).is_err());
+    let free = lattice(1e-4).kick_overlap(0.5, Transfer::ON_SITE).unwrap_err();
+    assert_eq!(free.code(), "lattice.not_localised");
     let far = lattice(6.0).kick_overlap(0.5, Transfer { reach: 1, band: 0, to_band: 1 });
     assert_eq!(far.unwrap_err().code(), "lattice.reach_between_bands");
     assert!(lattice(6.0).kick_overlap(f64::NAN, Transfer::ON_SITE).is_err());

@@ -10,6 +10,7 @@
 use std::borrow::Cow;
 
 use fluxloom_core::Document;
+use fluxloom_core::limits::plain;
 use serde::{Deserialize, Serialize};
 
 use crate::apparatus::Apparatus;
@@ -70,8 +71,11 @@ impl Apparatus {
                 cautions.push(Caution {
                     code: Cow::Borrowed("caution.outside_range"),
                     text: format!(
-                        "{here} = {value} stands outside {range_path} = [{low}, {high}]: it is \
-                         judged as it stands, but the planner will not choose it"
+                        "{here} = {} stands outside {range_path} = [{}, {}]: it is judged as it \
+                         stands, but the planner will not choose it",
+                        plain(value),
+                        plain(low),
+                        plain(high)
                     ),
                 });
             }

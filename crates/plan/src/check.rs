@@ -100,7 +100,8 @@ pub struct FluxCheck {
     pub kick_overlap: f64,
     /// |O_1/O_0|, the weight of diagonal links; none where O_0 vanishes.
     pub diagonal_ratio: Option<f64>,
-    /// Tube only: flux round the loop of legs, every link carrying the same flux.
+    /// Tube only: flux round the loop of legs, every link, the closing one
+    /// included, carrying the same flux in the same sense.
     pub loop_flux: Option<f64>,
     /// Tube only: distance mu of the loop flux from the nearest integer, 0 to 1/2.
     pub closure_mismatch: Option<f64>,
@@ -290,8 +291,11 @@ mod remedy {
             .filter_map(|wanted| Some((angle_for(wanted / widest)?, wanted)))
             .filter(|(value, _)| *value >= 0.0);
         let (value, wanted) = nearest(candidates, crossing.angle_deg)?;
+        // A side that no angle from 0 to 180 reaches cannot be left on.
         let side = |by: f64| {
-            angle_for((wanted + by) / widest).map_or(f64::INFINITY, |end| (end - value).abs())
+            angle_for((wanted + by) / widest)
+                .filter(|end| *end >= 0.0)
+                .map_or(f64::INFINITY, |end| (end - value).abs())
         };
         let tolerance = side(flux_tolerance).min(side(-flux_tolerance));
         // A budget that no angle exhausts leaves the whole range.

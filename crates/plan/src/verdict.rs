@@ -52,17 +52,27 @@ fn rad(value: f64) -> String {
     format!("{value:.decimals$} rad")
 }
 
+/// Two phases with so many digits that they do not look the same unless they are.
+fn apart(error: f64, budget: f64) -> (String, String) {
+    let texts = (rad(error), rad(budget));
+    if texts.0 != texts.1 || error == budget {
+        return texts;
+    }
+    (format!("{error} rad"), format!("{budget} rad"))
+}
+
 /// The verdict in one sentence.
 #[must_use]
 pub fn sentence(check: &FluxCheck) -> String {
     let sites = check.sites;
+    let (error, budget) = apart(check.phase_error_rad.abs(), check.phase_budget_rad);
     let mut text = format!(
         "{} {}: flux {:.6} is off by {} over {sites} sites, budget {}",
         if check.meets_target { "Meets" } else { "Misses" },
         check.target,
         check.flux,
-        rad(check.phase_error_rad.abs()),
-        rad(check.phase_budget_rad)
+        error,
+        budget
     );
     if !check.meets_target {
         text.push_str(&remedy(check));

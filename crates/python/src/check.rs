@@ -163,7 +163,7 @@ impl PyFluxCheck {
         self.inner.diagonal_ratio
     }
 
-    /// Tube only: flux round the loop of legs.
+    /// Tube only: flux round the loop of legs, all links alike.
     #[getter]
     fn loop_flux(&self) -> Option<f64> {
         self.inner.loop_flux
@@ -281,7 +281,8 @@ impl Judging<'_, '_> {
 /// legs : int, optional
 ///     Number of legs; needed for a tube.
 /// closed : bool
-///     Whether the last leg couples back to the first.
+///     Whether the last leg couples back to the first; every link, the closing
+///     one included, is taken to carry the same flux in the same sense.
 /// phase_budget_rad : float
 ///     Flux phase error over the sites that is accepted.
 ///

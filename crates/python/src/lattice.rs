@@ -137,12 +137,8 @@ impl PyLattice {
     /// Tunnelling t_r over ``reach`` sites in lattice recoils, from the exact band.
     ///
     /// The Hamiltonian contains -t; the sign is kept (lowest band: t_1 > 0,
-    /// t_2 < 0; odd bands: t_1 < 0). ``reach=0`` gives minus the band's mean.
-    ///
-    /// Raises
-    /// ------
-    /// NumericalError
-    ///     ``lattice.not_localised`` next to free motion.
+    /// t_2 < 0; odd bands: t_1 < 0). ``reach=0`` gives minus the band's mean. Hops
+    /// beyond the nearest are good to 1e-16 of the nearest.
     #[pyo3(signature = (*, reach=None, band=None), text_signature = "($self, *, reach=1, band=0)")]
     fn tunnelling_er(
         &self,
@@ -200,8 +196,15 @@ impl PyLattice {
         enter::long(py, |control| self.inner.onsite_integral(band, control))
     }
 
-    /// The Wannier function of a band on a grid centred on its site: real, even
-    /// in even bands, odd with a positive slope in odd bands.
+    /// The Wannier function of a band on a grid of ``sites * points_per_site + 1``
+    /// points centred on its site: real, even in even bands, odd with a positive
+    /// slope in odd bands.
+    ///
+    /// Raises
+    /// ------
+    /// NumericalError
+    ///     ``lattice.not_localised`` where the band all but touches a neighbour, so
+    ///     that its functions spread over more than 262144 sites.
     #[pyo3(signature = (*, band=None, points_per_site=None, sites=None), text_signature = "($self, *, band=0, points_per_site=64, sites=8)")]
     fn wannier(
         &self,

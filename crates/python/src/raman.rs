@@ -19,7 +19,8 @@ use crate::lattice::PyLattice;
 /// angle_deg : float
 ///     Full angle between the beams: 0 co-propagating, 180 counter-propagating.
 /// tilt_deg : float
-///     Angle between the difference of the wave vectors and the lattice axis.
+///     Angle between the difference of the wave vectors and the lattice axis,
+///     whatever the direction of that axis.
 ///
 /// Examples
 /// --------

@@ -187,8 +187,8 @@ impl Bands {
     /// smallest over the zone (at q = 1 above even bands, q = 0 above odd ones).
     ///
     /// # Errors
-    /// [`Error::OutOfRange`] for a band whose upper neighbour was not computed,
-    /// or for the quasimomentum.
+    /// [`Error::OutOfRange`] for a band that was not computed, or for the
+    /// quasimomentum.
     pub fn gap_er(&self, lower: usize, quasimomentum: Option<f64>) -> Result<f64, Error> {
         self.check_band(lower, "lower")?;
         let here = match quasimomentum {

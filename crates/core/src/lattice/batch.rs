@@ -54,7 +54,8 @@ pub struct BandGrid<'a> {
 }
 
 /// The lowest energies of every depth at every quasimomentum, in lattice
-/// recoils: `[depth, quasimomentum, band]`, good to 1e-10 E_R and better.
+/// recoils: `[depth, quasimomentum, band]`, good to 1e-10 E_R and better. Digits
+/// beyond that depend on how many depths are asked for together.
 ///
 /// # Errors
 /// [`Error::OutOfRange`] naming the first bad depth or quasimomentum by its
@@ -203,6 +204,14 @@ impl HalfOctaves {
         match self.nodes.get(&half_octave) {
             Some(nodes) => {
                 combine_rows(&weights(half_octave, depth_er), nodes, row);
+                // Rounding must not turn touching bands around.
+                for energies in row.chunks_mut(grid.count) {
+                    let mut below = f64::NEG_INFINITY;
+                    for energy in energies {
+                        *energy = energy.max(below);
+                        below = *energy;
+                    }
+                }
                 Ok(())
             }
             None => solve(depth_er, grid.quasimomenta, grid.count, row, control),

@@ -17,7 +17,7 @@ use fluxloom_kernel::bands::{STATE_TRUNCATION_ER, band_energies, cutoff, fold_qu
 use crate::error::Error;
 
 /// The widest spread of a Wannier function, in sites, that is still worked with.
-pub(super) const MOST_SITES: usize = 32_768;
+pub(super) const MOST_SITES: usize = 262_144;
 
 /// One Bloch state: amplitudes at momenta `first_momentum + 2k`, in k_L.
 #[derive(Debug, Clone)]
@@ -163,19 +163,9 @@ fn fix_sign(amplitudes: &mut [f64], first_momentum: f64, band: usize) {
 /// distance gap/(4 edge) for free bands crossing at `edge` k_L. An equidistant
 /// sum of N points then errs by exp(-pi N distance).
 pub(super) fn zone_points(depth_er: f64, band: usize, reach: usize) -> Result<usize, Error> {
-    let count = band + 2;
-    let kept = cutoff(depth_er, count, fluxloom_kernel::bands::ENERGY_TRUNCATION_ER);
-    let mut edges = vec![0.0; 2 * count];
-    band_energies(depth_er, &[0.0, 1.0], count, kept, &mut edges);
-    // Bands b and b+1 meet at q = 1 for even b, at q = 0 for odd b.
-    let distance = |lower: usize| {
-        let row = if lower.is_multiple_of(2) { count } else { 0 };
-        let at = |band: usize| edges.get(row + band).copied().unwrap_or_default();
-        (at(lower + 1) - at(lower)).max(0.0) / (4.0 * index(lower + 1))
-    };
-    let mut strip = distance(band);
+    let mut strip = branch_distance(depth_er, band);
     if band > 0 {
-        strip = strip.min(distance(band - 1));
+        strip = strip.min(branch_distance(depth_er, band - 1));
     }
     let wanted = 24.0 + 14.0 / strip.max(1e-300);
     if wanted > index(MOST_SITES) {
@@ -184,6 +174,18 @@ pub(super) fn zone_points(depth_er: f64, band: usize, reach: usize) -> Result<us
     #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
     let points = wanted.ceil() as usize + 2 * reach;
     Ok(points + points % 2)
+}
+
+/// Distance in k_L of the branch point between bands `lower` and `lower + 1` from
+/// the real axis. They meet at q = 1 for even `lower`, at q = 0 for odd.
+pub(super) fn branch_distance(depth_er: f64, lower: usize) -> f64 {
+    let count = lower + 2;
+    let kept = cutoff(depth_er, count, fluxloom_kernel::bands::ENERGY_TRUNCATION_ER);
+    let edge = if lower.is_multiple_of(2) { 1.0 } else { 0.0 };
+    let mut energies = vec![0.0; count];
+    band_energies(depth_er, &[edge], count, kept, &mut energies);
+    let at = |band: usize| energies.get(band).copied().unwrap_or_default();
+    (at(lower + 1) - at(lower)).max(0.0) / (4.0 * index(lower + 1))
 }
 
 /// `points` equidistant quasimomenta over one zone, shifted by a fraction of

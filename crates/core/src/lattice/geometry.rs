@@ -7,6 +7,7 @@ use serde::{Deserialize, Serialize};
 
 use crate::atom::Atom;
 use crate::constants::PLANCK_J_S;
+use crate::degrees::sin_deg;
 use crate::documents::Document;
 use crate::error::Error;
 use crate::limits;
@@ -126,8 +127,7 @@ impl Lattice {
     /// Distance a between neighbouring sites, lambda/(2 sin(A/2)).
     #[must_use]
     pub fn spacing_nm(&self) -> f64 {
-        // sin(90 degrees) is exactly 1, so that a retro-reflected beam gives exactly lambda/2.
-        0.5 * self.wavelength_nm / (0.5 * self.angle_deg).to_radians().sin()
+        0.5 * self.wavelength_nm / sin_deg(0.5 * self.angle_deg)
     }
 
     fn spacing_m(&self) -> f64 {

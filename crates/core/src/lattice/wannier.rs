@@ -4,6 +4,10 @@
 //! with the signs of the Bloch states: real, maximally localised, even about
 //! the site in even bands, odd with w'(0) > 0 in odd bands.
 
+use std::sync::Arc;
+
+use rustfft::num_complex::Complex;
+use rustfft::{Fft, FftPlannerScalar};
 use serde::{Deserialize, Serialize};
 
 use crate::control::{self, Control};
@@ -76,31 +80,56 @@ impl TryFrom<RawWannier> for Wannier {
     }
 }
 
-/// Positions handled between two looks at the control.
-const POSITIONS_PER_TASK: usize = 64;
+/// The states of a band around a ring of as many sites as there are quasimomenta.
+struct Ring {
+    states: Vec<BlochState>,
+    is_even: bool,
+    transform: Arc<dyn Fft<f64>>,
+}
 
-/// Values at positions in units of the spacing, normalised over one spacing.
-fn tabulate(
-    states: &[BlochState],
-    band: usize,
-    positions: &[f64],
-    control: &dyn Control,
-) -> Result<Vec<f64>, Error> {
-    let weight = 1.0 / index(states.len());
-    let wave = if band.is_multiple_of(2) { f64::cos } else { f64::sin };
-    let mut values = control::zeros(positions.len())?;
-    for_each_chunk(&mut values, POSITIONS_PER_TASK, |(task, values)| {
-        control::go_on(control)?;
-        for (value, x) in values.iter_mut().zip(positions.iter().skip(task * POSITIONS_PER_TASK)) {
-            let phase = std::f64::consts::PI * x;
-            let at = |state: &BlochState| -> f64 {
-                state.terms().map(|(p, a)| a * wave(p * phase)).sum()
-            };
-            *value = weight * states.iter().map(at).sum::<f64>();
-        }
-        Ok(())
-    })?;
-    Ok(values)
+impl Ring {
+    fn new(depth_er: f64, band: usize, reach: usize) -> Result<Self, Error> {
+        let points = zone_points(depth_er, band, reach)?;
+        let states = bloch_states(depth_er, band, &zone(points, 0.5));
+        let transform = FftPlannerScalar::new().plan_fft_inverse(points);
+        Ok(Self { states, is_even: band.is_multiple_of(2), transform })
+    }
+
+    /// Values at `fraction` of a spacing beyond every site 0, 1, ... of the ring,
+    /// normalised over one spacing.
+    ///
+    /// A state's waves all turn by the same factor from site to site, so that
+    /// its sum over waves is needed once, and the sum over states, at
+    /// quasimomenta -1 + (2j+1)/N, is a discrete Fourier transform.
+    fn values(&self, fraction: f64) -> Vec<f64> {
+        let phase = std::f64::consts::PI * fraction;
+        let turn = Complex::cis(2.0 * phase);
+        let mut waves: Vec<Complex<f64>> = self
+            .states
+            .iter()
+            .map(|state| {
+                let mut wave = Complex::cis(state.first_momentum * phase);
+                let mut sum = Complex::new(0.0, 0.0);
+                for amplitude in &state.amplitudes {
+                    sum += wave * amplitude;
+                    wave *= turn;
+                }
+                sum
+            })
+            .collect();
+        self.transform.process(&mut waves);
+        let count = index(self.states.len());
+        waves
+            .into_iter()
+            .enumerate()
+            .map(|(site, sum)| {
+                // exp(i pi m (-1 + 1/N)) is what the transform leaves out.
+                let value =
+                    sum * Complex::cis(std::f64::consts::PI * index(site) * (1.0 / count - 1.0));
+                (if self.is_even { value.re } else { value.im }) / count
+            })
+            .collect()
+    }
 }
 
 impl Lattice {
@@ -116,45 +145,60 @@ impl Lattice {
         limits::WANNIER_SITES.check(index(sites))?;
         control::allow_numbers(&[points_per_site, sites], 16)?;
         let count = points_per_site * sites;
-        let positions: Vec<f64> =
-            (0..=count).map(|k| (index(k) - 0.5 * index(count)) / index(points_per_site)).collect();
-        let points = zone_points(self.depth_er(), band, sites)?;
-        let states = bloch_states(self.depth_er(), band, &zone(points, 0.5));
+        let ring = Ring::new(self.depth_er(), band, sites)?;
+        // Grid points a whole number of sites apart share their place within a site:
+        // one task each, which fills a column of the table [place][site].
+        let mut table = control::zeros(points_per_site * (sites + 1))?;
+        let position = |k: usize| (index(k) - 0.5 * index(count)) / index(points_per_site);
+        for_each_chunk(&mut table, sites + 1, |(place, column)| {
+            control::go_on(control)?;
+            let start = position(place);
+            let values = ring.values(start - start.floor());
+            let length = index(values.len());
+            for (site, slot) in column.iter_mut().enumerate() {
+                let wanted = start.floor() + index(site);
+                // Once round the ring the sign changes: the quasimomenta stand half a
+                // step off the zone's edge.
+                let sign = if wanted < 0.0 { -1.0 } else { 1.0 };
+                #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)]
+                let value = values.get(wanted.rem_euclid(length) as usize);
+                *slot = sign * value.copied().unwrap_or_default();
+            }
+            Ok(())
+        })?;
         let spacing_nm = self.spacing_nm();
-        let amplitude = tabulate(&states, band, &positions, control)?
-            .into_iter()
-            .map(|w| w / spacing_nm.sqrt())
-            .collect();
-        Ok(Wannier { band, x_nm: positions.iter().map(|x| x * spacing_nm).collect(), amplitude })
+        let at = |k: usize| {
+            let slot = (k % points_per_site) * (sites + 1) + k / points_per_site;
+            table.get(slot).copied().unwrap_or_default() / spacing_nm.sqrt()
+        };
+        Ok(Wannier {
+            band,
+            x_nm: (0..=count).map(|k| position(k) * spacing_nm).collect(),
+            amplitude: (0..=count).map(at).collect(),
+        })
     }
 
     /// The integral of w^4 in units of k_L = pi/a: what turns an interaction
     /// strength into an on-site energy.
     ///
-    /// w^4 holds no wave beyond four times the largest kept momentum, so a sum
-    /// on a grid finer than that is exact; the range grows until the function
-    /// has decayed to rounding.
+    /// w^4 holds no wave beyond four times the largest kept momentum, so a sum on
+    /// a grid finer than that, round the whole ring, is exact to rounding.
     ///
     /// # Errors
     /// [`Error::OutOfRange`] for the band, [`Error::NotLocalised`], [`Error::Cancelled`].
     pub fn onsite_integral(&self, band: usize, control: &dyn Control) -> Result<f64, Error> {
         check_band(band, "band")?;
-        let points = zone_points(self.depth_er(), band, 0)?;
-        let states = bloch_states(self.depth_er(), band, &zone(points, 0.5));
-        let rows = states.first().map_or(0, |state| state.amplitudes.len());
+        let ring = Ring::new(self.depth_er(), band, 0)?;
+        let rows = ring.states.first().map_or(0, |state| state.amplitudes.len());
         // Momenta up to `rows` k_L each, four of them, need 2 x 4 rows/2 points a site.
-        let per_site = 4 * rows + 8;
-        let mut integral = 0.0;
-        for site in 0..points / 2 {
-            let positions: Vec<f64> =
-                (0..per_site).map(|k| index(site) + (index(k) + 0.5) / index(per_site)).collect();
-            let values = tabulate(&states, band, &positions, control)?;
-            let fourth: f64 = values.iter().map(|w| w.powi(4)).sum();
-            integral += 2.0 * fourth / index(per_site);
-            if fourth <= 1e-17 * integral * index(per_site) {
-                break;
-            }
-        }
-        Ok(integral / std::f64::consts::PI)
+        let mut sums = control::zeros(4 * rows + 8)?;
+        let places = index(sums.len());
+        for_each_chunk(&mut sums, 1, |(place, sum)| {
+            control::go_on(control)?;
+            let fourth = ring.values((index(place) + 0.5) / places);
+            sum.fill(fourth.iter().map(|w| w.powi(4)).sum());
+            Ok(())
+        })?;
+        Ok(sums.iter().sum::<f64>() / (places * std::f64::consts::PI))
     }
 }

@@ -2,12 +2,30 @@
 //! power of a retro-reflected beam, and as the root of the product of two
 //! crossing ones. Whoever changes one alone moves the other.
 
+use std::collections::BTreeSet;
+
 use fluxloom_core::limits::{DEPTH_ER, plain};
 
 use super::check;
 use crate::files::{Data, Node, path};
 
 const DEPTH: &str = "lattice.depth_er";
+
+/// What a change does beyond what it names.
+#[derive(Default)]
+pub(super) struct Balance {
+    /// Numbers that move along.
+    pub moves: Vec<Move>,
+    /// Why none does, where one might be expected to.
+    pub remark: Option<String>,
+}
+
+impl Balance {
+    /// Everything the user is told, a sentence each.
+    pub(super) fn sentences(self) -> Vec<String> {
+        self.moves.into_iter().map(|step| step.sentence).chain(self.remark).collect()
+    }
+}
 
 /// A number that moves along.
 pub(super) struct Move {
@@ -34,31 +52,66 @@ impl Factor {
 }
 
 /// What follows from the changes at `touched`, which lead from `before` to `after`.
-pub(super) fn moves(before: &Node, after: &Node, touched: &[Vec<String>]) -> Vec<Move> {
+pub(super) fn balance(before: &Node, after: &Node, touched: &[Vec<String>]) -> Balance {
     let is_touched = |path: &str| {
         let keys = path::split(path);
         touched.iter().any(|change| path::overlap(change, &keys))
     };
     let beams = lattice_beams(after);
-    // Other beams, other relation: nothing is known about the new one.
-    if beams.is_empty() || beams != lattice_beams(before) {
-        return Vec::new();
-    }
-    let powers: Vec<String> = beams.iter().map(|beam| format!("beams.{beam}.power_mw")).collect();
-    let moved: Vec<&String> = powers.iter().filter(|power| is_touched(power)).collect();
     let (Some(old), Some(new)) = (number(before, DEPTH), number(after, DEPTH)) else {
-        return Vec::new();
+        return Balance::default();
     };
-    if !DEPTH_ER.contains(new) {
-        return Vec::new();
+    if beams.is_empty() || !DEPTH_ER.contains(new) {
+        return Balance::default();
     }
-    match (is_touched(DEPTH) && old != new, moved.is_empty()) {
-        (true, true) => depth_moved(after, &powers, old, new),
-        (false, false) if !is_touched(DEPTH) || old != new => {
-            power_moved(before, after, &powers, old)
-        }
+    let depth_is_given = is_touched(DEPTH);
+    let powers: Vec<String> =
+        beams.iter().map(|beam| format!("beams.{}.power_mw", path::join("", beam))).collect();
+    // The order makes no difference to a standing wave.
+    if beams != lattice_beams(before) {
+        let remark = stays(after, &powers, depth_is_given, is_touched);
+        return Balance { remark, ..Balance::default() };
+    }
+    let any_power_is_given = powers.iter().any(|power| is_touched(power));
+    let moves = match (depth_is_given && old != new, any_power_is_given) {
+        (true, false) => depth_moved(after, &powers, old, new),
+        (false, true) if !depth_is_given => power_moved(before, after, &powers, old),
         _ => Vec::new(),
+    };
+    Balance { moves, remark: None }
+}
+
+/// With other beams nothing is known about the relation of depth and power, so
+/// what is not given stays; this says so.
+fn stays(
+    after: &Node,
+    powers: &[String],
+    depth_is_given: bool,
+    is_touched: impl Fn(&str) -> bool,
+) -> Option<String> {
+    let left = |path: &&String| !is_touched(path) && number(after, path).is_some();
+    let mut rest: Vec<String> = powers.iter().filter(left).cloned().collect();
+    let power_is_given = powers.iter().any(|path| is_touched(path));
+    match (depth_is_given, power_is_given) {
+        (true, false) => {}
+        (false, _) => rest = vec![DEPTH.to_owned()],
+        (true, true) => return None,
     }
+    let values: Vec<String> = rest
+        .iter()
+        .filter_map(|path| Some(format!("{} = {}", path::short(path), short(number(after, path)?))))
+        .collect();
+    (!values.is_empty()).then(|| {
+        format!(
+            "lattice.beams names other beams than before: {} as it was, because nothing is known \
+             of their depth and power together",
+            if let [value] = values.as_slice() {
+                format!("{value} stays")
+            } else {
+                format!("{} stay", values.join(" and "))
+            }
+        )
+    })
 }
 
 fn depth_moved(after: &Node, powers: &[String], old: f64, new: f64) -> Vec<Move> {
@@ -114,7 +167,7 @@ fn power_moved(before: &Node, after: &Node, powers: &[String], depth: f64) -> Ve
     vec![Move { path: DEPTH.to_owned(), factor, sentence }]
 }
 
-fn lattice_beams(root: &Node) -> Vec<&str> {
+fn lattice_beams(root: &Node) -> BTreeSet<&str> {
     let list = root.find(&["lattice", "beams"]).map(Node::list).unwrap_or_default();
     list.iter().filter_map(Node::text).collect()
 }

@@ -102,7 +102,7 @@ impl Apparatus {
     /// # Errors
     /// [`Error::Faults`] with everything that is wrong with it.
     pub fn from_tree(tree: Node) -> Result<Self, Error> {
-        Self::from_node(tree, Faults::new(None, Lines::Shown))
+        Self::from_node(tree, Faults::new(None, Lines::Hidden))
     }
 
     fn read_toml(text: &str, file: Option<&str>) -> Result<Self, Error> {

@@ -8,6 +8,9 @@ use super::{Apparatus, check};
 use crate::Error;
 use crate::files::{Node, nearest, path};
 
+/// The code of a path that leads nowhere.
+pub(super) const UNKNOWN_PATH: &str = "apparatus.unknown_path";
+
 /// A setting as found in the file or in the key table.
 pub(super) enum Place<'a> {
     Stated(&'static Key, &'a Node),
@@ -20,6 +23,13 @@ pub(super) enum Place<'a> {
 impl Apparatus {
     /// A fault about a path that leads nowhere.
     pub(super) fn unknown_path(&self, path: &str) -> Fault {
+        let known = self.known_paths();
+        let meant = nearest(path, known.iter().map(String::as_str)).map(str::to_owned);
+        fault(UNKNOWN_PATH, path, self.why_unknown(path), meant)
+    }
+
+    /// Every path that leads somewhere, tables included.
+    pub(super) fn known_paths(&self) -> Vec<String> {
         let mut known = self.paths();
         for table in keys::tables() {
             match table.strip_suffix(".*") {
@@ -29,23 +39,39 @@ impl Apparatus {
                 None => known.push(table.to_owned()),
             }
         }
-        let keys = path::split(path);
+        known
+    }
+
+    /// The table that would have to be there for this path to lead somewhere.
+    pub(super) fn absent_table(&self, keys: &[String]) -> Option<String> {
+        keys::find(keys)?;
+        let [table, name, ..] = keys else { return None };
+        let absent = self.tree.find(&[table, name]).is_none();
+        absent.then(|| path::short(&path::join(table, name)).into_owned())
+    }
+
+    /// Why a path leads nowhere.
+    pub(super) fn why_unknown(&self, path: &str) -> String {
+        let (shown, keys) = (path::short(path), path::split(path));
+        if let (Some(absent), Some(table)) = (self.absent_table(&keys), keys.first()) {
+            let names = self.names(table);
+            let others = match names.as_slice() {
+                [] => String::new(),
+                names => format!("; [{table}] has {}", path::listed(names)),
+            };
+            return format!("{shown}: there is no [{absent}] in this apparatus{others}");
+        }
         let parent = keys.split_last().map(|(_, parent)| parent).unwrap_or_default();
         let inside = match keys::find(parent) {
             Some(Found::Table(table)) => {
                 let names = self.names(&parent.join("."));
                 let known: Vec<String> = check::children(table).map(str::to_owned).collect();
                 let known = if known.is_empty() { names } else { known };
-                format!("; {} has {}", parent.join("."), known.join(", "))
+                format!("; {} has {}", path::short(&parent.join(".")), path::listed(known))
             }
             _ => String::new(),
         };
-        fault(
-            "apparatus.unknown_path",
-            path,
-            format!("{path} is not a setting of this apparatus{inside}"),
-            nearest(path, known.iter().map(String::as_str)).map(str::to_owned),
-        )
+        format!("{shown} is not a setting of this apparatus{inside}")
     }
 
     /// Whether every name in a path that the file chooses is in the file.
@@ -106,7 +132,7 @@ pub(super) fn inner(node: &Node) -> &Node {
 /// A value as its kind has it: `30` is 30.0 where a number is meant.
 pub(super) fn value(kind: &Kind, node: &Node) -> Value {
     match kind {
-        Kind::Count(_) | Kind::Version => match node.number() {
+        Kind::Count(_) | Kind::NonZero(_) | Kind::Version => match node.number() {
             // Counts are whole and far below 2^53: the checks saw to it.
             #[allow(clippy::cast_possible_truncation)]
             Some(number) => Value::from(number as i64),
@@ -139,6 +165,6 @@ pub(super) fn fault(
     message: String,
     did_you_mean: Option<String>,
 ) -> Fault {
-    let path = path.to_owned();
+    let path = path::short(path).into_owned();
     Fault { code: code.to_owned(), file: None, line: None, path, message, did_you_mean }
 }

@@ -1,10 +1,12 @@
 //! Changing settings: a new apparatus with the same comments, or every reason
 //! why not.
 
+use fluxloom_core::limits::plain;
 use serde_json::Value;
 use toml_edit::{DocumentMut, Item};
 
 use super::keys::{self, Found};
+use super::place::UNKNOWN_PATH;
 use super::{Apparatus, balance, check, edit};
 use crate::Error;
 use crate::files::{self, Data, Faults, Lines, Node, path};
@@ -48,50 +50,56 @@ impl Apparatus {
             }
         };
         for change in &changes {
-            put(&mut document, change);
+            put(&mut document, &self.tree, change);
         }
-        let mut text = edit::like(&self.text, document.to_string());
+        let mut text = edit::like(&self.text, &document.to_string());
         let mut reading = Faults::new(None, Lines::Hidden);
         let mut tree = read(&text, &mut reading);
-        let moves = balance::moves(&self.tree, &tree, &touched(&changes));
-        for step in &moves {
+        let balance = balance::balance(&self.tree, &tree, &touched(&changes));
+        for step in &balance.moves {
             if let Some(node) = balance::scaled(&tree, step) {
                 let keys = path::split(&step.path);
                 let item = edit::item(&node, "", &step.path);
                 edit::put(&mut document, &keys, item);
             }
         }
-        if !moves.is_empty() {
-            text = edit::like(&self.text, document.to_string());
+        if !balance.moves.is_empty() {
+            text = edit::like(&self.text, &document.to_string());
             tree = read(&text, &mut reading);
         }
         check::check(&tree, &mut faults);
         // The user set one number and the fault is at the other: name both.
         for fault in faults.iter_mut() {
-            if let Some(step) = moves.iter().find(|step| step.path == fault.path) {
+            if let Some(step) = balance.moves.iter().find(|step| step.path == fault.path) {
                 fault.message = format!("{}; {}", step.sentence, fault.message);
             }
         }
-        let changes = moves.into_iter().map(|step| step.sentence).collect();
-        faults.finish(Self { text, tree, changes })
+        faults.finish(Self { text, tree, changes: balance.sentences() })
     }
 
     /// Finds out where the changes lead, and reports those that lead nowhere.
     fn resolve(&self, changes: &[(String, Node)], faults: &mut Faults) -> Vec<Change> {
         let mut list: Vec<Change> = Vec::new();
+        let mut known = None;
         for (at, node) in changes {
             let keys = path::split(at);
             let found = keys::find(&keys).filter(|found| self.may_set(*found, &keys));
             let Some(found) = found else {
-                let fault = self.unknown_path(at);
-                faults.add_meant(&fault.code, None, at, fault.message, fault.did_you_mean);
+                let mut message = String::new();
+                // Beyond the most faults that are listed, they are only counted.
+                if !faults.is_full() {
+                    message = self.why_unknown(at);
+                    if let Some(table) = self.absent_table(&keys) {
+                        message += &format!("; to add one, give the whole table {table}");
+                    }
+                }
+                let known = known.get_or_insert_with(|| self.known_paths());
+                let near = (at.as_str(), known.iter().map(String::as_str));
+                faults.add_near(UNKNOWN_PATH, None, at, message, near);
                 continue;
             };
             if let Some(other) = list.iter().find(|other| path::overlap(&other.keys, &keys)) {
-                let message = format!(
-                    "{at} and {} are set in one call and one contains the other: set one of them",
-                    other.keys.join(".")
-                );
+                let message = both(at, (found, node), other);
                 faults.add("apparatus.overlapping_changes", None, at, message);
                 continue;
             }
@@ -120,7 +128,7 @@ fn nulls(node: &Node, at: &str, faults: &mut Faults) -> bool {
     let mut any = false;
     match &node.data {
         Data::Null => {
-            let message = format!("{at} cannot become null, which is no value: give a value");
+            let message = format!("{at} is given no value, and cannot be taken away: give one");
             faults.add("file.null", None, at, message);
             any = true;
         }
@@ -139,19 +147,58 @@ fn nulls(node: &Node, at: &str, faults: &mut Faults) -> bool {
     any
 }
 
-fn put(document: &mut DocumentMut, change: &Change) {
+/// The refusal of two changes of which one contains the other.
+fn both(at: &str, (found, node): (Found, &Node), other: &Change) -> String {
+    let other_at = other.keys.iter().fold(String::new(), |parent, key| path::join(&parent, key));
+    let remedy = match ((found, node, at), (other.found, &other.node, &*other_at)) {
+        // A value and what is known about it have one table to stand in.
+        ((Found::Part(_, part), detail, _), (Found::Setting(_), value, setting))
+        | ((Found::Setting(_), value, setting), (Found::Part(_, part), detail, _))
+            if part != "value" && !value.is_table() =>
+        {
+            format!(
+                "give both in one table, {} = {{ value = {}, {part} = {} }}",
+                path::short(setting),
+                shown(value),
+                shown(detail)
+            )
+        }
+        _ => "set one of them".to_owned(),
+    };
+    format!(
+        "{} and {} are set in one call and one contains the other: {remedy}",
+        path::short(at),
+        path::short(&other_at)
+    )
+}
+
+/// A value as it may be typed.
+fn shown(node: &Node) -> String {
+    match node.number() {
+        Some(number) => plain(number),
+        None => "...".to_owned(),
+    }
+}
+
+/// Writes a change over what `tree` says so far; a value that stays the same
+/// stays as it is written.
+fn put(document: &mut DocumentMut, tree: &Node, change: &Change) {
     let Change { keys, found, node } = change;
-    match found {
-        Found::Setting(key) => {
-            edit::put(document, keys, edit::item(node, key.name(), key.pattern));
+    let old = tree.find(keys);
+    if old.is_some_and(|old| old.same(node)) {
+        return;
+    }
+    let (name, pattern) = match found {
+        Found::Setting(key) => (key.name(), key.pattern),
+        Found::Pair(_) => ("", ""),
+        Found::Table(table) => ("", *table),
+        Found::Part(_, part) => return put_part(document, keys, part, node),
+    };
+    match old.filter(|old| old.is_table() && node.is_table()) {
+        Some(old) => edit::merge(document, keys, (old, node), pattern),
+        None => {
+            edit::put(document, keys, edit::item(node, name, pattern));
         }
-        Found::Pair(_) => {
-            edit::put(document, keys, edit::item(node, "", ""));
-        }
-        Found::Table(table) => {
-            edit::put(document, keys, edit::item(node, "", table));
-        }
-        Found::Part(_, part) => put_part(document, keys, part, node),
     }
 }
 

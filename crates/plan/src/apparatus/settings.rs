@@ -8,7 +8,7 @@ use super::keys::{self, Found, Spread, Standard};
 use super::place::{Place, fault, inner, standard_value, value};
 use super::{Apparatus, Halves, read_state};
 use crate::Error;
-use crate::files::{Node, path};
+use crate::files::{Data, Node, path};
 
 /// A number with what is known about it.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
@@ -165,9 +165,14 @@ impl Apparatus {
             Place::NotStated => return Err(not_stated(path)),
             Place::Stated(_, node) | Place::Inner(node) => node,
         };
-        let value = inner(node).number().ok_or_else(|| wrong_kind(path, "a number"))?;
+        let value = match &inner(node).data {
+            Data::List(list) if list.len() == 2 => {
+                return Err(wrong_kind(path, "one number but two: one_or_two gives both"));
+            }
+            _ => inner(node).number().ok_or_else(|| wrong_kind(path, "a number"))?,
+        };
         let words = |key: &str| match &node.get(key)?.data {
-            crate::files::Data::Text(text) | crate::files::Data::Date(text) => Some(text.clone()),
+            Data::Text(text) | Data::Date(text) => Some(text.clone()),
             _ => None,
         };
         Ok(Measured {

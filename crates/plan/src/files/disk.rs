@@ -58,7 +58,8 @@ const SIXTEEN: &str = " but looks like one in UTF-16, or like no text at all";
 pub(super) fn refuse_zeros(text: &str, faults: &mut Faults) -> bool {
     let Some(at) = text.find('\0') else { return false };
     let line = 1 + text.bytes().take(at).filter(|b| *b == b'\n').count();
-    let message = format!("this holds bytes of zero and is no text in UTF-8{SIXTEEN}: save it as UTF-8");
+    let message =
+        format!("this holds bytes of zero and is no text in UTF-8{SIXTEEN}: save it as UTF-8");
     faults.add("file.not_text", Some(line), "", message);
     true
 }
@@ -87,9 +88,8 @@ fn replace(path: &Path, text: &str) -> Result<(), SystemError> {
     // name that the user knows.
     let mut options = OpenOptions::new();
     options.write(true).create_new(true);
-    let mut file = tempfile::Builder::new()
-        .prefix(".fluxloom-")
-        .make_in(folder, |name| options.open(name))?;
+    let mut file =
+        tempfile::Builder::new().prefix(".fluxloom-").make_in(folder, |name| options.open(name))?;
     file.as_file_mut().write_all(text.as_bytes())?;
     if let Ok(old) = fs::metadata(&path) {
         file.as_file().set_permissions(old.permissions())?;

@@ -18,13 +18,19 @@ const MOST_COMPARED: usize = 200_000;
 /// The longest message, in bytes; what is longer repeats the user's own words.
 const MOST_BYTES: usize = 4000;
 
+/// Letters of the longest unit that a name may lack, generously.
+const LONGEST_UNIT: usize = 24;
+
 /// The candidate that was probably meant: the one that only lacks its unit, or a near miss.
 pub fn nearest<'a>(found: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     // No name is as long as that, and measuring the distance would take its time.
     if found.len() > 200 {
         return None;
     }
-    let known: Vec<&str> = known.into_iter().collect();
+    // As many letters as may differ; names of quite another length are none.
+    let allowed = (found.len() / 3).max(2) + LONGEST_UNIT;
+    let known = known.into_iter().filter(|name| name.len().abs_diff(found.len()) <= allowed);
+    let known: Vec<&str> = known.collect();
     let without_unit = |name: &&&str| {
         name.strip_prefix(found).is_some_and(|unit| !found.is_empty() && unit.starts_with('_'))
     };
@@ -160,9 +166,8 @@ impl Faults {
         }
         let path = &*shown;
         let line = if self.lines == Lines::Shown { line } else { None };
-        let same = |f: &Fault| {
-            f.line == line && f.code == code && f.path == path && f.message == message
-        };
+        let same =
+            |f: &Fault| f.line == line && f.code == code && f.path == path && f.message == message;
         if self.list.iter().any(same) {
             return;
         }
@@ -203,12 +208,7 @@ impl Faults {
         self.list.is_empty()
     }
 
-    /// The faults found so far, in the order found.
-    pub fn iter(&self) -> impl Iterator<Item = &Fault> {
-        self.list.iter()
-    }
-
-    /// As [`Faults::iter`], to be changed.
+    /// The faults found so far, in the order found, to be changed.
     pub fn iter_mut(&mut self) -> impl Iterator<Item = &mut Fault> {
         self.list.iter_mut()
     }

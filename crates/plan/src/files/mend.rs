@@ -260,9 +260,15 @@ fn key_of(text: &str) -> Option<Cow<'_, str>> {
     has_letters.then(|| Cow::Owned(key.chars().map(bare).collect()))
 }
 
-/// A line cut to what a message can carry.
+/// A line without its remark, cut to what a message can carry.
 fn cut_line(text: &str) -> String {
-    text.lines().next().unwrap_or("").trim().chars().take(80).collect()
+    let line = text.lines().next().unwrap_or("").trim();
+    let mut marks = line.match_indices('#').map(|(at, _)| line.get(..at).unwrap_or_default());
+    let is_outside = |before: &&str| {
+        before.ends_with([' ', '\t']) && before.matches('"').count().is_multiple_of(2)
+    };
+    let line = marks.find(is_outside).unwrap_or(line).trim_end();
+    line.chars().take(80).collect()
 }
 
 fn report_twice(part: &Part, first: Option<usize>, faults: &mut Faults) {
@@ -270,7 +276,9 @@ fn report_twice(part: &Part, first: Option<usize>, faults: &mut Faults) {
     let path = part.path();
     let before = first.map_or_else(String::new, |line| format!(", first on line {line}"));
     let what = if part.is_header {
-        format!("`{shown}` opens this table a second time{before}: keep one header for all its keys")
+        format!(
+            "`{shown}` opens this table a second time{before}: keep one header for all its keys"
+        )
     } else {
         format!("`{shown}` gives {} a second time{before}: keep one", path::short(&path))
     };
@@ -312,8 +320,9 @@ fn report(part: &Part, error: &TomlError, faults: &mut Faults) {
             let value = equals.and_then(|equals| broken.get(equals + 1..)).filter(|_| inside == 0);
             let value = value.map(|value| value.split('#').next().unwrap_or_default());
             let advice = value.and_then(slips::advice);
-            let advice = advice.map_or_else(String::new, |advice| format!("; {advice}"));
-            format!("`{shown}` is not TOML: {}{advice}", error.message())
+            // The parser tells what it expected of a letter, the advice what was meant.
+            let why = advice.unwrap_or_else(|| error.message().to_owned());
+            format!("`{shown}` is not TOML: {why}")
         }
     };
     faults.add("file.syntax", number, &path, message);

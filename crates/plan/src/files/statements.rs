@@ -258,10 +258,7 @@ mod tests {
         let text = "# x\n\na = [ # ]\n 1,\n [2] ]\n[t]\nb = \"\"\"x\nc = 1\n\"\"\"\nd = { e = 1,\n f = 2 }\n";
         let found: Vec<_> = split(text).into_iter().map(|(text, _)| text).collect();
         let b = "b = \"\"\"x\nc = 1\n\"\"\"";
-        assert_eq!(
-            found,
-            ["# x", "a = [ # ]\n 1,\n [2] ]", "[t]", b, "d = { e = 1,\n f = 2 }"]
-        );
+        assert_eq!(found, ["# x", "a = [ # ]\n 1,\n [2] ]", "[t]", b, "d = { e = 1,\n f = 2 }"]);
         assert!(split(text).iter().all(|(_, open)| open.is_none()));
         assert_eq!(statements(text)[2].line, 6);
     }

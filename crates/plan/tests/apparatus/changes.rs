@@ -190,6 +190,144 @@ fn two_crossing_beams_go_as_the_root() {
     assert_eq!(moved.changes().len(), 2);
 }
 
+/// Two beams that cross.
+fn crossing() -> Apparatus {
+    let text = SMALL
+        .replace("[beams.lattice]\n", "[beams.lattice]\npower_mw = 100\n")
+        .replace(
+            "[lattice]\n",
+            "[beams.second]\nlaser = \"lattice\"\npower_mw = 25\n[lattice]\nangle_deg = 90\n",
+        )
+        .replace("[\"lattice\"]", "[\"lattice\", \"second\"]");
+    Apparatus::from_toml(&text).unwrap()
+}
+
+#[test]
+fn the_order_of_two_beams_makes_no_difference() {
+    let swapped = ("lattice.beams", json!(["second", "lattice"]));
+    let ap = change(&crossing(), &[swapped.clone(), ("lattice.depth_er", json!(3))]).unwrap();
+    assert_eq!(ap.number("beams.lattice.power_mw").unwrap(), 50.0);
+    assert_eq!(ap.changes().len(), 2);
+    let ap =
+        change(&crossing(), &[swapped.clone(), ("beams.second.power_mw", json!(100))]).unwrap();
+    assert_eq!(ap.number("lattice.depth_er").unwrap(), 12.0);
+    assert!(change(&crossing(), &[swapped]).unwrap().changes().is_empty());
+}
+
+#[test]
+fn with_other_beams_nothing_moves_and_that_is_said() {
+    let one = ("lattice.beams", json!(["second"]));
+    let retro = ("lattice.angle_deg", json!(180));
+    let told = |more: &[(&str, serde_json::Value)]| {
+        let changes = [&[one.clone(), retro.clone()], more].concat();
+        let ap = change(&crossing(), &changes).unwrap();
+        assert!(ap.changes().len() < 2);
+        ap.changes().first().cloned().unwrap_or_default()
+    };
+    assert!(told(&[]).contains("lattice.depth_er = 6 stays"));
+    assert!(
+        told(&[("lattice.depth_er", json!(9))]).contains("beams.second.power_mw = 25 stays"),
+        "{}",
+        told(&[("lattice.depth_er", json!(9))])
+    );
+    assert!(told(&[("beams.second.power_mw", json!(9))]).contains("lattice.depth_er = 6 stays"));
+    let both = [("lattice.depth_er", json!(9)), ("beams.second.power_mw", json!(9))];
+    assert_eq!(told(&both), "");
+}
+
+#[test]
+fn a_whole_table_keeps_what_stays_the_same() {
+    // The table as it is, as a program has it: nothing is written differently.
+    let mut lattice = bay().get("lasers.lattice").unwrap();
+    let ap = change(&bay(), &[("lasers.lattice", lattice.clone())]).unwrap();
+    assert_eq!(ap.to_toml(), crate::BAY);
+    assert_eq!(
+        change(&bay(), &[("lasers.lattice.linewidth_hz", json!(5000))]).unwrap().to_toml(),
+        crate::BAY
+    );
+    lattice["wavelength_nm"] = json!(1053.0);
+    lattice.as_object_mut().unwrap().shift_remove("drift_rms_hz");
+    let ap = change(&bay(), &[("lasers.lattice", lattice)]).unwrap();
+    let expected = bay_with("wavelength_nm = 1064.0", "wavelength_nm = 1053.0")
+        .replace("drift_rms_hz = 2.0e6\n", "");
+    assert_eq!(ap.to_toml(), expected);
+    // So does a last line without an end.
+    let open = Apparatus::from_toml(SMALL.trim_end()).unwrap();
+    let same = change(&open, &[("cloud", open.get("cloud").unwrap())]).unwrap();
+    assert_eq!(same.to_toml(), SMALL.trim_end());
+    // Tables of tables, and a measured number with a new uncertainty.
+    let mut beams = bay().get("beams").unwrap();
+    beams["raman_b"]["power_mw"] = json!(0.3);
+    beams["raman_c"] = json!({"laser": "raman"});
+    let ap = change(&bay(), &[("beams", beams)]).unwrap();
+    let text = ap.to_toml();
+    assert!(text.contains("power_mw = 0.44                    # total of its tones"), "{text}");
+    assert!(text.contains("\n[beams.raman_c]\nlaser = \"raman\"\n"), "{text}");
+    assert_eq!(ap.number("beams.raman_b.power_mw").unwrap(), 0.3);
+    let ap = change(&bay(), &[("lattice.depth_er", json!({"value": 6.0, "standard_error": 0.1}))])
+        .unwrap();
+    let expected =
+        bay_with("value = 6.0, standard_error = 0.06 }", "value = 6.0, standard_error = 0.1 }");
+    assert_eq!(ap.to_toml(), expected);
+    // The whole apparatus, table by table.
+    let value = bay().to_value();
+    for (key, table) in value.as_object().unwrap() {
+        let same = change(&bay(), &[(key.as_str(), table.clone())]).unwrap();
+        assert_eq!(same.to_toml(), crate::BAY, "{key}");
+    }
+}
+
+#[test]
+fn messages_about_changes_speak_of_what_the_user_typed() {
+    let told = |path: &str, value: serde_json::Value| {
+        let list = change(&bay(), &[(path, value)]).unwrap_err().faults();
+        assert_eq!(list.len(), 1, "{list:?}");
+        assert!(!list[0].message.contains("quotes") && !list[0].message.contains("null"));
+        list[0].message.clone()
+    };
+    let wavelength = "lasers.raman.wavelength_nm";
+    for (value, part) in [
+        (json!("769"), "the text \"769\" was found: give the number itself"),
+        (json!("769,5"), "write 769.5"),
+        (json!("770."), "write 770.0"),
+        (json!(".77e3"), "write 0.77e3"),
+        (json!("769 nm"), "the unit, which is in the key: 769"),
+        (json!("abc"), "takes a number but the text \"abc\" was found"),
+        (json!(null), "is given no value"),
+    ] {
+        assert!(told(wavelength, value).contains(part), "{part}");
+    }
+    assert!(told("field.mains_locked", json!("True")).contains("takes true or false"));
+    assert!(told("beams.lattice.laser", json!(1)).contains("the number 1 was found"));
+    assert!(told("cloud.start", json!(1)).contains("takes a state"));
+    assert!(told("trap", json!(1)).contains("give a table"));
+}
+
+#[test]
+fn a_missing_table_is_named() {
+    let fault = |path: &str| change(&bay(), &[(path, json!(1))]).unwrap_err().faults().remove(0);
+    let ramen = fault("lasers.ramen.wavelength_nm");
+    assert_eq!(ramen.did_you_mean.as_deref(), Some("lasers.raman.wavelength_nm"));
+    for part in
+        ["there is no [lasers.ramen]", "lattice, raman", "give the whole table lasers.ramen"]
+    {
+        assert!(ramen.message.contains(part), "{}", ramen.message);
+    }
+    assert!(!fault("lasers.raman.colour").message.contains("there is no"));
+}
+
+#[test]
+fn a_value_and_its_uncertainty_go_into_one_table() {
+    let depth = ("lattice.depth_er", json!(6.5));
+    let error = ("lattice.depth_er.standard_error", json!(0.1));
+    for changes in [[depth.clone(), error.clone()], [error, depth]] {
+        let fault = change(&bay(), &changes).unwrap_err().faults().remove(0);
+        assert_eq!(fault.code, "apparatus.overlapping_changes");
+        let table = "lattice.depth_er = { value = 6.5, standard_error = 0.1 }";
+        assert!(fault.message.contains(table), "{}", fault.message);
+    }
+}
+
 #[test]
 fn a_move_beyond_a_limit_names_both_settings() {
     let fault = change(&bay(), &[("lattice.depth_er", json!(90))]).unwrap_err().faults().remove(0);

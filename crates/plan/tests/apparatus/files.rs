@@ -23,6 +23,44 @@ fn bad_bytes_and_missing_files() {
 }
 
 #[test]
+fn letters_of_two_bytes_are_seen() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("wide.toml");
+    let little: Vec<u8> = BAY.encode_utf16().flat_map(u16::to_le_bytes).collect();
+    let big: Vec<u8> = BAY.encode_utf16().flat_map(u16::to_be_bytes).collect();
+    let marked = [&[0xff, 0xfe], little.as_slice()].concat();
+    for bytes in [little, big, marked, b"name = \"\0\"".to_vec()] {
+        std::fs::write(&path, bytes).unwrap();
+        let list = Apparatus::load(&path).unwrap_err().faults();
+        assert_eq!((list.len(), list[0].code.as_str()), (1, "file.not_text"));
+        assert!(list[0].message.contains("UTF-16"), "{}", list[0].message);
+    }
+    assert_eq!(Apparatus::from_toml("a\0").unwrap_err().code(), "file.not_text");
+    assert_eq!(Apparatus::from_json("{\0}").unwrap_err().code(), "file.not_text");
+}
+
+#[test]
+fn mixed_line_ends_stay_mixed() {
+    let text: String = BAY
+        .split_inclusive('\n')
+        .enumerate()
+        .map(
+            |(index, line)| {
+                if index % 3 == 0 { line.replace('\n', "\r\n") } else { line.to_owned() }
+            },
+        )
+        .collect();
+    let ap = Apparatus::from_toml(&text).unwrap();
+    let changed = change(&ap, &[("trap.along_hz", json!(25.0))]).unwrap().to_toml();
+    let mut different = 0;
+    for (old, new) in text.split_inclusive('\n').zip(changed.split_inclusive('\n')) {
+        different += usize::from(old != new);
+        assert!(old == new || new.contains("along_hz = 25.0"), "{old:?} {new:?}");
+    }
+    assert_eq!((different, changed.len()), (1, text.len()));
+}
+
+#[test]
 fn a_byte_order_mark_and_windows_lines_are_fine_and_stay() {
     let text = format!("\u{feff}{}", BAY.replace('\n', "\r\n"));
     let ap = Apparatus::from_toml(&text).unwrap();
@@ -44,8 +82,14 @@ fn saving_keeps_the_text_byte_for_byte() {
     other.save(&path).unwrap();
     assert_eq!(Apparatus::load(&path).unwrap(), other);
     assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 1);
+    // What the system says about the user's own path.
     let nowhere = folder.path().join("no/such/bay.toml");
-    assert!(matches!(bay().save(&nowhere), Err(Error::System { .. })));
+    let Err(Error::System { path, source }) = bay().save(&nowhere) else { panic!() };
+    assert_eq!((path, source.kind()), (nowhere, std::io::ErrorKind::NotFound));
+    assert!(source.raw_os_error().is_some() && !source.to_string().contains("fluxloom"));
+    let Err(Error::System { source, .. }) = bay().save(folder.path()) else { panic!() };
+    assert!(source.raw_os_error().is_some());
+    assert_eq!(std::fs::read_dir(folder.path()).unwrap().count(), 1);
 }
 
 #[cfg(unix)]
@@ -61,6 +105,17 @@ fn saving_keeps_permissions_and_links() {
     assert!(link.is_symlink());
     assert_eq!(std::fs::read_to_string(&path).unwrap(), BAY);
     assert_eq!(std::fs::metadata(&path).unwrap().permissions().mode() & 0o777, 0o640);
+    // A link to what is not there yet stays a link as well; one to itself leads nowhere.
+    let (early, far) = (folder.path().join("early.toml"), folder.path().join("far.toml"));
+    std::os::unix::fs::symlink("late.toml", &early).unwrap();
+    std::os::unix::fs::symlink("early.toml", &far).unwrap();
+    bay().save(&far).unwrap();
+    assert!(early.is_symlink() && far.is_symlink());
+    assert_eq!(std::fs::read_to_string(folder.path().join("late.toml")).unwrap(), BAY);
+    let circle = folder.path().join("circle.toml");
+    std::os::unix::fs::symlink("circle.toml", &circle).unwrap();
+    assert!(matches!(bay().save(&circle), Err(Error::System { .. })));
+    assert!(circle.is_symlink());
 }
 
 #[test]
@@ -120,6 +175,23 @@ fn values_from_a_program_are_checked_alike() {
     assert!(list.iter().all(|f| f.line.is_none() && f.file.is_none()));
     for code in ["file.null", "file.wrong_type", "file.unknown_key", "file.not_a_table"] {
         assert!(codes.contains(&code), "{code} is not in {codes:?}");
+    }
+    for (key, new, code) in [
+        ("format", json!(null), "file.format"),
+        ("version", json!(1.5), "file.version"),
+        ("version", json!("1"), "file.version"),
+        ("version", json!(-1), "file.version"),
+        ("version", json!(1e30), "file.version_too_new"),
+    ] {
+        let mut value = bay().to_value();
+        if new.is_null() {
+            value.as_object_mut().unwrap().shift_remove(key);
+        } else {
+            value[key] = new;
+        }
+        let list = Apparatus::from_value(&value).unwrap_err().faults();
+        assert_eq!((list.len(), list[0].code.as_str()), (1, code), "{list:?}");
+        assert_eq!(Apparatus::from_json(&value.to_string()).unwrap_err().code(), code);
     }
     assert_eq!(Apparatus::from_value(&json!(3)).unwrap_err().code(), "file.wrong_type");
     assert_eq!(Apparatus::from_value(&json!(null)).unwrap_err().code(), "file.wrong_type");

@@ -162,3 +162,16 @@ fn equality_is_of_values() {
     let measured = SMALL.replace("= 6", "= { value = 6 }");
     assert_ne!(Apparatus::from_toml(&measured).unwrap(), ap);
 }
+
+#[test]
+fn two_radii_are_not_one_number() {
+    let text =
+        bay_with("waist_um = 120.0 ", "waist_um = { value = [100, 200], standard_error = 1 } ");
+    let ap = Apparatus::from_toml(&text).unwrap();
+    for path in ["beams.lattice.waist_um", "beams.lattice.waist_um.value"] {
+        let fault = ap.measured(path).unwrap_err().faults().remove(0);
+        assert_eq!(fault.code, "apparatus.wrong_kind");
+        assert!(fault.message.contains("one_or_two"), "{}", fault.message);
+        assert_eq!(ap.one_or_two(path).unwrap(), [100.0, 200.0]);
+    }
+}

@@ -1,11 +1,13 @@
 //! The isotope and its states.
 
-use fluxloom_core::Atom;
+use std::collections::BTreeSet;
+
 use fluxloom_core::limits::Limit;
+use fluxloom_core::{Atom, Error};
 
 use super::super::state::{Halves, read_pair, read_state};
-use super::value::{number, shown, text, wrong_type};
-use crate::files::{Data, Faults, Node, nearest, path};
+use super::value::{Asked, number, shown, text, wrong_type};
+use crate::files::{Data, Faults, Node, path};
 
 /// The atom that the file names, if it exists.
 pub(super) fn of(root: &Node) -> Option<Atom> {
@@ -14,24 +16,26 @@ pub(super) fn of(root: &Node) -> Option<Atom> {
 
 /// Checks the name of an isotope.
 pub(super) fn name(node: &Node, at: &str, faults: &mut Faults) {
-    let Some(found) = text(node, at, "the name of an isotope, such as \"40K\"", faults) else {
+    let Some(found) = text(node, at, "the name of an isotope, such as \"40K\",", faults) else {
         return;
     };
     if let Err(error) = Atom::new(found) {
-        let known = Atom::available();
         let message = format!(
             "{at} = \"{}\" is not in the table: known are {}",
             shown(found),
-            known.join(", ")
+            Atom::available().join(", ")
         );
-        let meant = nearest(found, known.iter().map(AsRef::as_ref)).map(str::to_owned);
+        let meant = match &error {
+            Error::UnknownAtom { suggestion, .. } => suggestion.clone(),
+            _ => None,
+        };
         faults.add_meant(error.code(), node.line, at, message, meant);
     }
 }
 
 /// Checks a state "F,m" of the atom; of any atom if it is not known.
 pub(super) fn state(node: &Node, at: &str, atom: Option<&Atom>, faults: &mut Faults) {
-    let Some(found) = text(node, at, "a state in quotes, such as \"9/2,-9/2\",", faults) else {
+    let Some(found) = text(node, at, "a state, such as \"9/2,-9/2\",", faults) else {
         return;
     };
     let why = match read_state(found) {
@@ -54,9 +58,9 @@ pub(super) fn pairs(
 ) {
     if !node.is_table() {
         let asked = "a table from pairs of states to numbers, { \"F,m F,m\" = 100.0 },";
-        return wrong_type(node, at, asked, faults);
+        return wrong_type(node, at, Asked::Other(asked), faults);
     }
-    let mut seen: Vec<[Halves; 2]> = Vec::new();
+    let mut seen: BTreeSet<[Halves; 2]> = BTreeSet::new();
     for entry in node.entries() {
         let here = path::join(at, &entry.key);
         let line = entry.node.line;
@@ -74,18 +78,17 @@ pub(super) fn pairs(
                     let message = format!("{here} {why}");
                     faults.add("file.bad_state", line, &here, message);
                 }
-                if seen.contains(&pair) {
+                if !seen.insert(pair) {
                     let message = format!("{here} is the same pair as one before: keep one");
                     faults.add("file.duplicate_name", line, &here, message);
                 }
-                seen.push(pair);
             }
         }
         if entry.node.is_table() {
             super::measured::check(&entry.node, &here, faults);
         }
         if let Some(value) = super::measured::inner(&entry.node) {
-            number(limit, value, &here, "a number", faults);
+            number(limit, value, &here, Asked::Number("a number"), faults);
         }
     }
 }

@@ -4,7 +4,7 @@
 use toml_edit::Datetime;
 
 use super::super::keys::{MEASURED_KEYS, STANDARD_ERROR};
-use super::value::wrong_type;
+use super::value::{Asked, wrong_type};
 use crate::files::{Data, Faults, Node, path};
 
 /// The number of a measured table, or the node itself if it is no table.
@@ -27,17 +27,19 @@ pub(super) fn check(node: &Node, at: &str, faults: &mut Faults) {
             "standard_error" => standard_error(place, &here, faults),
             "data" => {
                 if place.text().is_none() {
-                    wrong_type(place, &here, "the name of a file, in quotes,", faults);
+                    wrong_type(place, &here, Asked::Text("the name of a file"), faults);
                 }
             }
             "measured" => {
                 let is_date = match &place.data {
-                    Data::Date(_) => true,
-                    Data::Text(text) => text.parse::<Datetime>().is_ok(),
+                    Data::Date(text) | Data::Text(text) => {
+                        // A time alone is no date, though TOML has it too.
+                        text.parse::<Datetime>().is_ok_and(|date| date.date.is_some())
+                    }
                     _ => false,
                 };
                 if !is_date {
-                    wrong_type(place, &here, "a date such as 2026-11-30", faults);
+                    wrong_type(place, &here, Asked::Other("a date such as 2026-11-30"), faults);
                 }
             }
             _ => {
@@ -59,6 +61,6 @@ fn standard_error(node: &Node, at: &str, faults: &mut Faults) {
                 faults.add_error(&error, node.line, at);
             }
         }
-        None => wrong_type(node, at, "a number", faults),
+        None => wrong_type(node, at, Asked::Number("a number"), faults),
     }
 }

@@ -3,7 +3,7 @@
 
 use fluxloom_core::limits::{FIELD_GAUSS, TIME_S};
 
-use super::Kind::{Choice, Count, Flag, Name, Number, Range, Setting, Vector};
+use super::Kind::{Choice, Count, Flag, Name, NonZero, Number, Range, Setting, Vector};
 use super::Need::{Default, Optional, Required};
 use super::Standard::{Number as N, Text as T, Whole as W};
 use super::{Key, ranges as r};
@@ -20,7 +20,7 @@ pub(super) const KEYS: &[Key] = &[
     Key::new("modulators.*.bandwidth_hz", Number(r::CARRIER_HZ), Optional, "the full band"),
     Key::new(
         "modulators.*.order",
-        Count(r::ORDER),
+        NonZero(r::ORDER),
         Default(W(1), "first order, shifted up, unless said"),
         "the diffraction order; its sign shifts up or down",
     ),

@@ -28,6 +28,8 @@ pub enum Kind {
     Number(Limit),
     /// A whole number, or a measured table around one.
     Count(Limit),
+    /// A whole number other than 0, or a measured table around one.
+    NonZero(Limit),
     /// One number, or two for the two axes of an ellipse.
     OneOrTwo(Limit),
     /// Where the neighbouring setting named second may go: two numbers, ascending.
@@ -65,7 +67,7 @@ impl Kind {
     /// Whether a measured table may stand here.
     #[must_use]
     pub fn is_measurable(&self) -> bool {
-        matches!(self, Self::Number(_) | Self::Count(_) | Self::OneOrTwo(_))
+        matches!(self, Self::Number(_) | Self::Count(_) | Self::NonZero(_) | Self::OneOrTwo(_))
     }
 
     /// Whether the value is a table of its own rather than part of the file's layout.

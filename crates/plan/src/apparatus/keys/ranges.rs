@@ -53,7 +53,7 @@ pub(super) const RATE: Limit =
 pub(super) const GRADIENT: Limit =
     closed("gradient_gauss_per_cm", -1e6, 1e6, "give the gradient in gauss per centimetre");
 pub(super) const ORDER: Limit =
-    closed("order", -10.0, 10.0, "give the diffraction order, a whole number with its sign");
+    closed("order", -10.0, 10.0, "give the diffraction order, a whole number with its sign, not 0");
 pub(super) const PASSES: Limit =
     closed("passes", 1.0, 16.0, "give how often the light passes the modulator, 1 or 2 as a rule");
 pub(super) const TONES: Limit =
