@@ -6,7 +6,7 @@
 //! (Weyl, 0 <= V <= s); the number of eigenvalues below x is the number of sign
 //! changes in the leading minors of H - x (Sturm), so bisection keeps a proof
 //! at every step and has no trouble with near-degenerate pairs. All pairs
-//! (quasimomentum, band) run in lockstep, [`LANES`] at a time.
+//! (quasimomentum, band) run in lockstep, sixteen at a time.
 //!
 //! Reference: J. W. Demmel, Applied Numerical Linear Algebra (SIAM 1997),
 //! section 5.3.4 (bisection and its backward stability); from memory.

@@ -1,4 +1,4 @@
-//! Weighted sums of rows: out[i] = sum_j weight[j] rows[j][i].
+//! Weighted sums of rows: `out[i] = sum_j weight[j] rows[j][i]`.
 //!
 //! The inner loop of interpolation over many columns at once. Terms are added
 //! in the order of the rows, so the sum does not depend on the CPU level.

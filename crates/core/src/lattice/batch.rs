@@ -2,7 +2,7 @@
 //!
 //! Each energy is an analytic function of the depth: its branch points lie at
 //! complex depths, where gaps close. On a half-octave s..sqrt(2) s Chebyshev
-//! interpolation through [`NODES`] depths therefore converges fast for every
+//! interpolation through sixteen depths therefore converges fast for every
 //! quasimomentum, near-degenerate points included (measured: below 4e-12 E_R
 //! for four bands at every depth), and a thousand depths cost hardly more than
 //! the nodes. The last coefficients are looked at: a half-octave that has not
