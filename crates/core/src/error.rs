@@ -122,7 +122,7 @@ pub enum Error {
     },
     /// A Raman pair was given as geometry only and light was asked of it.
     #[error(
-        "this Raman pair was given by its geometry and carries no beams: build it with from_beams to ask for couplings"
+        "this Raman pair was given by its geometry and carries no beams: powers and couplings cannot be asked of it"
     )]
     NoBeams,
     /// A combination of arguments means nothing.
