@@ -34,7 +34,9 @@ lint: $(VENV)/tools
 	$(BIN)/ruff check python tests benches notebooks-examples
 	$(BIN)/ruff format --check python tests benches notebooks-examples
 
-# The extension module is tested from Python.
+# The extension module is tested from Python. A fixed seed draws the same examples
+# every time; another PROPTEST_RNG_SEED draws others.
+export PROPTEST_RNG_SEED ?= 1
 test-rust:
 	cargo test $(CARGO_FLAGS) --exclude fluxloom-python
 	FLUXLOOM_CPU=baseline cargo test $(CARGO_FLAGS) --exclude fluxloom-python --lib --tests
