@@ -1,4 +1,4 @@
-//! How fast the bands come: job J5, 10^4 depths x 51 quasimomenta x 4 bands.
+//! How fast the bands come: 10^4 depths x 51 quasimomenta x 4 bands, and one lattice.
 //!
 //! The comparison with numpy in one run is `make bench-peers`.
 
