@@ -390,3 +390,8 @@ def test_importing_the_package_leaves_the_extras_alone() -> None:
         [sys.executable, "-c", program], capture_output=True, text=True, check=True
     )
     assert done.stdout.strip() == "[]"
+
+
+def test_a_wannier_function_draws_itself() -> None:
+    ax = LATTICE.wannier(sites=4).plot()
+    assert "nm" in ax.get_xlabel()

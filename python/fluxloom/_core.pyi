@@ -160,6 +160,7 @@ class Wannier(_Document["Wannier"]):
     band: Final[int]
     x_nm: Final[NDArray[np.float64]]
     amplitude: Final[NDArray[np.float64]]
+    def plot(self, ax: Axes | None = None) -> Axes: ...
 
 @final
 class RamanPair(_Document["RamanPair"]):

@@ -169,7 +169,7 @@ fn signs_of_tunnelling_alternate_between_bands() {
 
 #[test]
 fn tunnelling_keeps_its_digits_in_deep_lattices() {
-    // source: asymptotic width of Mathieu bands, DLMF 28.8.2, for band 0:
+    // source: asymptotic width of Mathieu bands, DLMF 28.8.2 (from memory), for band 0:
     // b1 - a0 ~ 2^5 sqrt(2/pi) q^(3/4) exp(-4 sqrt q), q = s/4; the first
     // correction is 3/(16 sqrt q)-like, so the ratio tends to 1 from below.
     let ratio = |depth_er: f64| {

@@ -252,7 +252,7 @@ mod tests {
 
     #[test]
     fn deep_wells_are_harmonic_with_the_known_corrections() {
-        // Large-parameter expansion of the Mathieu characteristic values, DLMF 28.8.1,
+        // Large-parameter expansion of the Mathieu characteristic values, DLMF 28.8.1 (from memory),
         // with h = sqrt(s)/2: E = (2b+1) sqrt(s) - ((2b+1)^2 + 1)/8 - ...
         let depth = 900.0_f64;
         for (band, energy) in energies(depth, &[0.4], 3).iter().enumerate() {

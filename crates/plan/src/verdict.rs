@@ -5,8 +5,7 @@ use std::fmt::Write as _;
 use crate::check::FluxCheck;
 
 /// A length or angle with as many digits as its tolerance deserves.
-#[must_use]
-pub fn to_tolerance(value: f64, tolerance: f64) -> String {
+fn to_tolerance(value: f64, tolerance: f64) -> String {
     // Three digits beyond the first of the tolerance, so that rounding never uses it up.
     let digits = (2.0 - tolerance.abs().log10().floor()).clamp(0.0, 9.0);
     #[allow(clippy::cast_possible_truncation, clippy::cast_sign_loss)]

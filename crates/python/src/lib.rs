@@ -8,6 +8,7 @@
 
 mod apparatus;
 mod atom;
+mod bands;
 mod check;
 mod convert;
 mod documents;
@@ -73,13 +74,15 @@ mod _core {
     #[pymodule_export]
     use super::atom::{PyAtom, PyDataSource, PySourceTable};
     #[pymodule_export]
+    use super::bands::{PyBands, PyWannier};
+    #[pymodule_export]
     use super::check::{PyFluxCheck, PyNearFraction, check_flux};
     #[pymodule_export]
     use super::functions::{
         band_energies_er, flux_of_arrays, fold, raman_angles, raman_wavelengths,
     };
     #[pymodule_export]
-    use super::lattice::{PyBands, PyLattice, PyWannier};
+    use super::lattice::PyLattice;
     #[pymodule_export]
     use super::raman::{PyRamanPair, PySolution};
     #[pymodule_export]
