@@ -55,7 +55,7 @@ $(VENV)/ready:
 	$(BIN)/python -c "open('$(VENV)/ready', 'w').close()"
 
 $(VENV)/tools: $(VENV)/ready pyproject.toml
-	$(BIN)/python -m pip install --quiet "pandas>=2.0" "xarray>=2024.1" "hypothesis>=6.100" "mypy>=1.11" "pytest>=8" "ruff>=0.9" "scipy>=1.17"
+	$(BIN)/python -m pip install --quiet "pandas>=2.0" "xarray>=2024.1" "hypothesis>=6.100" "mypy>=1.11" "pytest>=8" "mpmath>=1.3" "ruff>=0.9" "scipy>=1.17" "sympy>=1.13"
 	$(BIN)/python -c "open('$(VENV)/tools', 'w').close()"
 
 # Speed, in one run each; nothing else should run meanwhile.
@@ -70,6 +70,7 @@ reference: $(VENV)/tools
 	$(BIN)/python -m pip install --quiet "mendeleev==1.3.0"
 	$(BIN)/python tests/reference/make_band_energies.py
 	$(BIN)/python tests/reference/make_masses.py tests/reference/masses.json
+	$(BIN)/python tests/reference/make_wigner.py
 
 clean:
 	cargo clean

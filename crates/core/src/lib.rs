@@ -4,6 +4,7 @@
 //! Each room uses only rooms that stand before it: [`constants`], [`rational`],
 //! [`atom`], [`light`], [`lattice`], [`flux`].
 
+pub mod angular;
 pub mod atom;
 pub mod constants;
 pub mod control;
@@ -22,5 +23,5 @@ pub use atom::Atom;
 pub use documents::Document;
 pub use error::Error;
 pub use lattice::{Lattice, LatticeInput};
-pub use light::{Crossing, Directions, RamanPair};
+pub use light::{Beam, BeamInput, Crossing, Directions, RamanPair};
 pub use rational::{Flux, Fraction, Sense};

@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 use std::process::Command;
 
 /// From the foundations upwards.
-const ROOMS: [&str; 6] = ["constants", "rational", "atom", "light", "lattice", "flux"];
+const ROOMS: [&str; 7] = ["constants", "angular", "rational", "atom", "light", "lattice", "flux"];
 
 fn sources(folder: &Path) -> Vec<PathBuf> {
     let mut found = Vec::new();
