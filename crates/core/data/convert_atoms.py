@@ -37,6 +37,14 @@ LINE_NUMBERS = {
     "A_MHz": ("hyperfine_a_hz", 6),
     "B_MHz": ("hyperfine_b_hz", 6),
 }
+# Measured ratios of line strengths, d_over^2/d_under^2, with which the elements of
+# `under` in the collected table were computed ("CALC"): they join the uncertainties
+# of both. Keys: isotope as collected -> over, under, value, uncertainty, source.
+STRENGTH_RATIOS = {
+    "Rb-85": ("D2", "D1", "1.99221", "0.00003", "LEON"),
+    "Rb-87": ("D2", "D1", "1.99221", "0.00003", "LEON"),
+    "Cs-133": ("D2", "D1", "1.9808", "0.0002", "RATK"),
+}
 # The conventions are prose of this project: house spelling, and no pointer to
 # a document that does not travel with the table. Texts of sources stay as they are.
 WORDING = {"polarizabilit": "polarisabilit", "see physics.md section 6: ": ""}
@@ -106,6 +114,16 @@ def isotope(row: dict) -> dict:
     return out
 
 
+def joined(over: str, under: str, value: str, unc: str, source: str, *, row: dict) -> dict:
+    """A ratio of strengths; the collected elements must have it."""
+    dipoles = {entry["name"]: entry["d_reduced_ea0"]["value"] for entry in row["lines"]}
+    found = (dipoles[over] / dipoles[under]) ** 2
+    if abs(found - Decimal(value)) > Decimal(unc):
+        raise Lost(f"the elements of {over} and {under} have the ratio {found}, not {value}")
+    entry = {"value": Decimal(value), "unc": Decimal(unc), "status": "verified", "source": source}
+    return {"over": over, "under": under, "strength_ratio": number(entry, 0)}
+
+
 def convert(collected: dict) -> dict:
     """The whole table in the embedded form."""
     rest = dict(collected)
@@ -119,6 +137,8 @@ def convert(collected: dict) -> dict:
     }
     atoms = rest.pop("atoms")
     out["atoms"] = {isotope_name(name): isotope(row) for name, row in atoms.items()}
+    for name, ratio in STRENGTH_RATIOS.items():
+        out["atoms"][isotope_name(name)]["strength_ratios"] = [joined(*ratio, row=atoms[name])]
     if rest or len(out["atoms"]) != len(atoms):
         raise Lost(f"unknown keys {sorted(rest)}, or two isotopes share a name")
     return out
@@ -139,6 +159,8 @@ def text_of(value: object, indent: str = "") -> str:
             return "{" + ", ".join(f"{json.dumps(k)}: {text_of(v)}" for k, v in value.items()) + "}"
         rows = (f"{inner}{json.dumps(k)}: {text_of(v, inner)}" for k, v in value.items())
         return "{\n" + ",\n".join(rows) + "\n" + indent + "}"
+    if isinstance(value, list):
+        return "[" + ", ".join(text_of(item, indent) for item in value) + "]"
     if isinstance(value, Decimal):
         return "0" if value == 0 else str(value).replace("E", "e").replace("e+", "e")
     return json.dumps(value, ensure_ascii=True)
@@ -181,7 +203,8 @@ def compare(collected: dict, embedded: dict) -> int:
             raise Lost(f"{part} changed")
     if list(collected["conventions"]) != list(embedded["conventions"]):
         raise Lost("conventions changed")
-    if count != entries(collected, "unc") or count != entries(embedded, "uncertainty"):
+    added = len(STRENGTH_RATIOS)
+    if count != entries(collected, "unc") or count + added != entries(embedded, "uncertainty"):
         raise Lost("a number was left behind")
     return count
 

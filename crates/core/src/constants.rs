@@ -23,6 +23,8 @@ pub const BOHR_RADIUS_M: f64 = 5.291_772_105_44e-11;
 pub const VACUUM_PERMITTIVITY_F_PER_M: f64 = 8.854_187_818_8e-12;
 /// Hartree energy, J; relative uncertainty 1.1e-12.
 pub const HARTREE_J: f64 = 4.359_744_722_206_0e-18;
+/// Gauss in a tesla (exact).
+pub const GAUSS_PER_TESLA: f64 = 1e4;
 /// Bohr magneton, J/T; relative uncertainty 3.1e-10.
 pub const BOHR_MAGNETON_J_PER_T: f64 = 9.274_010_065_7e-24;
 

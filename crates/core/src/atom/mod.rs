@@ -8,17 +8,30 @@
 //!
 //! Single-photon recoil: `E_R/h = h/(2 m lambda^2)`, `v = h/(m lambda)`.
 
+mod dipoles;
+mod insensitive;
+mod levels;
+mod manifold;
 mod name;
 mod number;
 mod own;
 mod raw;
 mod resolve;
+mod state;
+mod structure;
 mod table;
+mod uncertainty;
 
 use serde::{Deserialize, Serialize};
 
+pub use levels::GroundLevels;
+pub(crate) use levels::Levels;
+pub use manifold::{Hyperfine, Manifold};
 pub use number::{DataSource, DataStatus, Number};
 pub use resolve::{Ground, Line};
+pub use state::{State, halves_text};
+pub use structure::{LineStructure, Structure};
+pub use uncertainty::{Uncertain, standard_errors};
 
 use crate::constants::{ATOMIC_MASS_KG, PLANCK_J_S};
 use crate::error::Error;
@@ -226,6 +239,19 @@ impl Atom {
             .filter(|(_, number)| number.listed)
             .map(|(name, number)| DataSource::new(name, number))
             .collect()
+    }
+
+    /// Measured ratios of line strengths, d_over^2/d_under^2, with which one of
+    /// two dipole elements of the table was obtained (`D2/D1.strength_ratio`).
+    /// They join the uncertainties of both elements.
+    #[must_use]
+    pub fn strength_ratios(&self) -> Vec<DataSource> {
+        let rows = self.isotope.row.strength_ratios.iter();
+        rows.map(|row| {
+            let name = format!("{}/{}.strength_ratio", row.over, row.under);
+            DataSource::new(name, &Number::tabulated(&row.strength_ratio))
+        })
+        .collect()
     }
 
     /// The user's own numbers by name: name, value, source.

@@ -7,6 +7,7 @@ use std::sync::OnceLock;
 
 use serde::Deserialize;
 
+use super::dipoles::Dipoles;
 use super::number::DataStatus;
 
 const TEXT: &str = include_str!("../../data/atoms.json");
@@ -61,6 +62,18 @@ pub(super) struct IsotopeRow {
     pub g_i: Entry,
     pub residual_polarisability_au: Option<Entry>,
     pub lines: BTreeMap<String, LineRow>,
+    #[serde(default)]
+    pub strength_ratios: Vec<RatioRow>,
+}
+
+/// A measured ratio of two lines' strengths (squared reduced dipole elements):
+/// the element of `under` was computed from that of `over` with it.
+#[derive(Debug, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub(super) struct RatioRow {
+    pub over: String,
+    pub under: String,
+    pub strength_ratio: Entry,
 }
 
 /// One isotope with what its name says.
@@ -73,6 +86,26 @@ pub(super) struct Isotope {
     /// Neutrons of the neutral atom: their parity decides its statistics.
     pub neutrons: u32,
     pub row: IsotopeRow,
+    dipoles: OnceLock<Dipoles>,
+}
+
+impl Isotope {
+    /// What the spins say about the lines, computed when first asked for.
+    pub fn dipoles(&'static self) -> &'static Dipoles {
+        self.dipoles.get_or_init(|| {
+            let excited: Vec<i32> =
+                self.row.lines.values().map(|line| twice(line.excited_spin)).collect();
+            Dipoles::new(twice(self.row.nuclear_spin.value), twice(self.row.ground_spin), &excited)
+        })
+    }
+}
+
+/// Twice a spin of the table.
+fn twice(spin: f64) -> i32 {
+    // A test holds that the table's spins are small multiples of one half.
+    #[allow(clippy::cast_possible_truncation)]
+    let whole = (2.0 * spin).round() as i32;
+    whole
 }
 
 #[derive(Debug, Deserialize)]
@@ -135,7 +168,15 @@ fn isotope(name: &str, row: IsotopeRow) -> Option<Isotope> {
     let (symbol, protons, element_names) =
         ELEMENTS.into_iter().find(|(known, ..)| *known == symbol)?;
     let neutrons = mass_number.checked_sub(protons)?;
-    Some(Isotope { name: name.to_owned(), symbol, element_names, mass_number, neutrons, row })
+    Some(Isotope {
+        name: name.to_owned(),
+        symbol,
+        element_names,
+        mass_number,
+        neutrons,
+        row,
+        dipoles: OnceLock::new(),
+    })
 }
 
 #[cfg(test)]
@@ -169,6 +210,9 @@ mod tests {
             assert_eq!(row.mass_u.value.round(), f64::from(isotope.mass_number));
             assert_eq!(row.ground_spin > 0.0, row.hyperfine_a_hz.is_some());
             assert_eq!(row.ground_spin > 0.0, row.g_j.is_some());
+            // What the level formulas are written for.
+            assert!(row.ground_spin == 0.0 || row.ground_spin == 0.5);
+            assert!(row.nuclear_spin.value > 0.0 && row.nuclear_spin.value < 10.0);
             assert_eq!(row.lines.len(), 2);
             for (name, line) in &row.lines {
                 // One-photon lines: J changes by at most one.
