@@ -281,6 +281,41 @@ pub const WAIST_UM: Limit = closed(
     (0.5, 1e5),
     "give the 1/e^2 intensity radius in micrometres",
 );
+/// Place of a beam's focus along each laboratory axis.
+pub const FOCUS_UM: Limit = closed(
+    "focus_um",
+    "beam.focus_out_of_range",
+    (-1e8, 1e8),
+    "give the place of the focus in micrometres from the origin of the laboratory axes",
+);
+/// A point of the laboratory, along each axis.
+pub const POSITION_UM: Limit = closed(
+    "at_um",
+    "beam.position_out_of_range",
+    (-1e8, 1e8),
+    "give the point in micrometres from the origin of the laboratory axes",
+);
+/// Power of a reflected beam over that of the incoming one.
+pub const POWER_FRACTION: Limit = closed(
+    "power_fraction",
+    "beam.power_fraction_out_of_range",
+    (0.0, 1.0),
+    "give a fraction, not per cent: 0.99 is ninety-nine per cent",
+);
+/// Angle of the long axis of a polarisation from the plane of the beams.
+pub const POLARISATION_DEG: Limit = closed(
+    "polarisation_deg",
+    "polarisation.angle_out_of_range",
+    (-180.0, 180.0),
+    "give the angle from the plane of the beams: 0 in the plane, 90 along its normal",
+);
+/// Ellipticity angle of a polarisation.
+pub const ELLIPTICITY_DEG: Limit = closed(
+    "ellipticity_deg",
+    "polarisation.ellipticity_out_of_range",
+    (-45.0, 45.0),
+    "0 is linear, +-45 circular; turn the long axis instead of going beyond",
+);
 
 /// Number of threads for long work.
 pub const THREADS: Limit = closed(
@@ -297,8 +332,22 @@ pub const MEMORY_BYTES: Limit = closed(
     "give the number of bytes that one answer may take",
 );
 
+/// Circularity of light along the field.
+pub const CIRCULARITY: Limit = closed(
+    "circularity",
+    "light.circularity_out_of_range",
+    (-1.0, 1.0),
+    "give V of light along the field: 1 is sigma+, -1 sigma-, 0 linear",
+);
+/// Amplitude of an oscillating magnetic field.
+pub const AMPLITUDE_GAUSS: Limit = closed(
+    "amplitude_gauss",
+    "radio.amplitude_out_of_range",
+    (0.0, 1000.0),
+    "give the peak amplitude of the oscillating field in gauss",
+);
 /// Every limit, for the documentation and for tests that walk the table.
-pub const ALL: [Limit; 27] = [
+pub const ALL: [Limit; 34] = [
     WAVELENGTH_NM,
     DEPTH_ER,
     LATTICE_ANGLE_DEG,
@@ -324,6 +373,13 @@ pub const ALL: [Limit; 27] = [
     FIELD_GAUSS,
     POWER_MW,
     WAIST_UM,
+    FOCUS_UM,
+    POSITION_UM,
+    POWER_FRACTION,
+    POLARISATION_DEG,
+    ELLIPTICITY_DEG,
+    CIRCULARITY,
+    AMPLITUDE_GAUSS,
     THREADS,
     MEMORY_BYTES,
 ];

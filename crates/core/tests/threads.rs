@@ -4,7 +4,7 @@ use fluxloom_core::atom::{DataSource, Number};
 use fluxloom_core::fault::Fault;
 use fluxloom_core::flux::Solution;
 use fluxloom_core::lattice::{Bands, LinkOverlaps, Wannier};
-use fluxloom_core::{Atom, Error, Flux, Fraction, Lattice, RamanPair, Sense};
+use fluxloom_core::{Atom, Beam, Error, Flux, Fraction, Lattice, RamanPair, Sense};
 
 fn shared<T: Send + Sync>() -> usize {
     std::mem::size_of::<T>()
@@ -21,6 +21,7 @@ fn public_types_cross_threads() {
         shared::<Wannier>(),
         shared::<LinkOverlaps>(),
         shared::<RamanPair>(),
+        shared::<Beam>(),
         shared::<Solution>(),
         shared::<Flux>(),
         shared::<Fraction>(),
