@@ -101,7 +101,7 @@ pub fn sentence(check: &FluxCheck) -> String {
 
 fn remedy(check: &FluxCheck) -> String {
     let today_nm = check.raman.leading_wavelength_nm();
-    let two_colours = check.raman.as_directions().is_some_and(|d| d.emit_wavelength_nm.is_some());
+    let two_colours = !check.raman.is_one_laser();
     let tune = if two_colours { "tune the absorbed beam" } else { "tune" };
     let wavelength = check
         .exact_wavelength_nm

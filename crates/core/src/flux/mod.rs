@@ -15,6 +15,7 @@
 //! ```
 
 mod closure;
+mod coupled;
 mod formula;
 mod inverse;
 

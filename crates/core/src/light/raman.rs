@@ -1,10 +1,13 @@
-//! The geometry of the light that links internal states.
+//! The light that links internal states: its geometry, and its beams if they
+//! are known.
 //!
 //! A two-photon link absorbs from one beam and emits into the other, and kicks
 //! the atom by k_absorb - k_emit; a single-photon (clock) link absorbs only.
+//! What the beams couple is in [`super::two_photon`].
 
 use serde::{Deserialize, Serialize};
 
+use super::Beam;
 use crate::degrees::{cos_deg, sin_deg};
 use crate::documents::Document;
 use crate::error::Error;
@@ -40,6 +43,8 @@ pub struct Directions {
 #[serde(try_from = "RawPair", into = "RawPair")]
 pub struct RamanPair {
     form: Form,
+    /// Absorbed, emitted, for roles that are not swapped.
+    beams: Option<[Beam; 2]>,
     swapped: bool,
 }
 
@@ -70,6 +75,10 @@ struct RawPair {
     emit: Option<[f64; 3]>,
     #[serde(skip_serializing_if = "Option::is_none", default)]
     emit_wavelength_nm: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    absorb_beam: Option<Beam>,
+    #[serde(skip_serializing_if = "Option::is_none", default)]
+    emit_beam: Option<Beam>,
     swapped: bool,
 }
 
@@ -77,7 +86,7 @@ impl TryFrom<RawPair> for RamanPair {
     type Error = Error;
 
     fn try_from(raw: RawPair) -> Result<Self, Error> {
-        let pair = match raw {
+        let geometry = match raw {
             RawPair {
                 wavelength_nm: Some(wavelength_nm),
                 angle_deg: Some(angle_deg),
@@ -87,7 +96,7 @@ impl TryFrom<RawPair> for RamanPair {
                 emit: None,
                 emit_wavelength_nm: None,
                 ..
-            } => Self::crossing(Crossing { wavelength_nm, angle_deg, tilt_deg })?,
+            } => Some(Self::crossing(Crossing { wavelength_nm, angle_deg, tilt_deg })?),
             RawPair {
                 absorb: Some(absorb),
                 absorb_wavelength_nm: Some(absorb_wavelength_nm),
@@ -97,29 +106,49 @@ impl TryFrom<RawPair> for RamanPair {
                 angle_deg: None,
                 tilt_deg: None,
                 ..
-            } => Self::from_directions(Directions {
+            } => Some(Self::from_directions(Directions {
                 absorb,
                 absorb_wavelength_nm,
                 emit,
                 emit_wavelength_nm,
-            })?,
-            _ => {
-                return Err(Error::Contradiction {
-                    code: "raman.mixed_forms",
-                    message: "a Raman pair is either wavelength_nm, angle_deg and tilt_deg, or \
-                              absorb and absorb_wavelength_nm with emit and emit_wavelength_nm"
-                        .to_owned(),
-                });
-            }
+            })?),
+            RawPair {
+                wavelength_nm: None,
+                angle_deg: None,
+                tilt_deg: None,
+                absorb: None,
+                absorb_wavelength_nm: None,
+                emit: None,
+                emit_wavelength_nm: None,
+                ..
+            } => None,
+            _ => return Err(mixed_forms()),
+        };
+        let pair = match (geometry, raw.absorb_beam, raw.emit_beam) {
+            (Some(geometry), None, None) => geometry,
+            (Some(geometry), Some(absorb), Some(emit)) => geometry.with_beams(absorb, emit)?,
+            (None, Some(absorb), Some(emit)) => Self::from_beams(absorb, emit)?,
+            _ => return Err(mixed_forms()),
         };
         Ok(Self { swapped: raw.swapped, ..pair })
     }
 }
 
+fn mixed_forms() -> Error {
+    Error::Contradiction {
+        code: "raman.mixed_forms",
+        message: "a Raman pair is wavelength_nm, angle_deg and tilt_deg, or absorb and \
+                  absorb_wavelength_nm with emit and emit_wavelength_nm, or absorb_beam and \
+                  emit_beam"
+            .to_owned(),
+    }
+}
+
 impl From<RamanPair> for RawPair {
     fn from(pair: RamanPair) -> Self {
+        // What follows from the beams is not written twice.
         let crossing = pair.as_crossing();
-        let directions = pair.as_directions();
+        let directions = pair.as_directions().filter(|_| pair.beams.is_none());
         Self {
             wavelength_nm: crossing.map(|c| c.wavelength_nm),
             angle_deg: crossing.map(|c| c.angle_deg),
@@ -128,10 +157,18 @@ impl From<RamanPair> for RawPair {
             absorb_wavelength_nm: directions.map(|d| d.absorb_wavelength_nm),
             emit: directions.and_then(|d| d.emit),
             emit_wavelength_nm: directions.and_then(|d| d.emit_wavelength_nm),
+            absorb_beam: pair.beams.map(|[absorb, _]| absorb),
+            emit_beam: pair.beams.map(|[_, emit]| emit),
             swapped: pair.swapped,
         }
     }
 }
+
+/// Wavelengths closer than this part come from one laser and are tuned together.
+const ONE_LASER: f64 = 1e-4;
+
+/// Beams that are to fit a crossing angle may miss it by this, in degrees.
+const SAME_ANGLE_DEG: f64 = 1e-6;
 
 impl RamanPair {
     /// Two beams of one wavelength, by their crossing angle.
@@ -142,7 +179,7 @@ impl RamanPair {
         limits::WAVELENGTH_NM.check(crossing.wavelength_nm)?;
         limits::RAMAN_ANGLE_DEG.check(crossing.angle_deg)?;
         limits::TILT_DEG.check(crossing.tilt_deg)?;
-        Ok(Self { form: Form::Crossing(crossing), swapped: false })
+        Ok(Self { form: Form::Crossing(crossing), beams: None, swapped: false })
     }
 
     /// Beams by their directions; without `emit` a single-photon link.
@@ -168,7 +205,92 @@ impl RamanPair {
                 });
             }
         }
-        Ok(Self { form: Form::Directions(directions), swapped: false })
+        Ok(Self { form: Form::Directions(directions), beams: None, swapped: false })
+    }
+
+    /// Two beams with all that is known of them: the form that has couplings.
+    ///
+    /// # Errors
+    /// None for beams that exist.
+    pub fn from_beams(absorb: Beam, emit: Beam) -> Result<Self, Error> {
+        let (first, second) = (absorb.wavelength_nm(), emit.wavelength_nm());
+        let geometry = Self::from_directions(Directions {
+            absorb: absorb.unit_direction(),
+            absorb_wavelength_nm: first,
+            emit: Some(emit.unit_direction()),
+            emit_wavelength_nm: (first != second).then_some(second),
+        })?;
+        Ok(Self { beams: Some([absorb, emit]), ..geometry })
+    }
+
+    /// This pair, given by its crossing angle, with the beams that cross so.
+    ///
+    /// # Errors
+    /// [`Error::Contradiction`] (`raman.beams_do_not_fit`) for beams of another
+    /// wavelength or angle, or a pair that was given by directions.
+    pub fn with_beams(&self, absorb: Beam, emit: Beam) -> Result<Self, Error> {
+        let Some(crossing) = self.as_crossing() else {
+            return Err(Error::Contradiction {
+                code: "raman.beams_do_not_fit",
+                message: "this pair was given by directions: build it from its beams instead"
+                    .to_owned(),
+            });
+        };
+        let (one, two) = (absorb.unit_direction(), emit.unit_direction());
+        let across = vector::cross(one, two);
+        let angle_deg = dot(across, across).sqrt().atan2(dot(one, two)).to_degrees();
+        if (angle_deg - crossing.angle_deg).abs() > SAME_ANGLE_DEG
+            || absorb.wavelength_nm() != crossing.wavelength_nm
+            || emit.wavelength_nm() != crossing.wavelength_nm
+        {
+            return Err(Error::Contradiction {
+                code: "raman.beams_do_not_fit",
+                message: format!(
+                    "beams of {} and {} nm crossing at {angle_deg} deg are not a pair of {} nm \
+                     at {} deg: build the pair from its beams instead",
+                    absorb.wavelength_nm(),
+                    emit.wavelength_nm(),
+                    crossing.wavelength_nm,
+                    crossing.angle_deg
+                ),
+            });
+        }
+        Ok(Self { beams: Some([absorb, emit]), ..*self })
+    }
+
+    /// The beams in the roles they play: absorbed, emitted.
+    ///
+    /// # Errors
+    /// [`Error::NoBeams`] for a pair that was given by its geometry.
+    pub fn beams(&self) -> Result<[Beam; 2], Error> {
+        let [absorb, emit] = self.beams.ok_or(Error::NoBeams)?;
+        Ok(if self.swapped { [emit, absorb] } else { [absorb, emit] })
+    }
+
+    /// The beams as given, whatever their roles.
+    #[must_use]
+    pub fn given_beams(&self) -> Option<[Beam; 2]> {
+        self.beams
+    }
+
+    /// Whether the pair carries beams.
+    #[must_use]
+    pub fn has_beams(&self) -> bool {
+        self.beams.is_some()
+    }
+
+    /// Whether both colours are so close that one laser makes them.
+    #[must_use]
+    pub fn is_one_laser(&self) -> bool {
+        match self.form {
+            Form::Crossing(_) => true,
+            Form::Directions(Directions { absorb_wavelength_nm, emit_wavelength_nm, .. }) => {
+                emit_wavelength_nm.is_none_or(|emit_nm| {
+                    let apart = (emit_nm - absorb_wavelength_nm).abs();
+                    self.beams.is_some() && apart < ONE_LASER * absorb_wavelength_nm
+                })
+            }
+        }
     }
 
     /// The same beams with the roles of absorption and emission exchanged: the
@@ -230,6 +352,9 @@ impl RamanPair {
                 match (directions.emit, directions.emit_wavelength_nm) {
                     (None, _) => (absorbed, 0.0),
                     (Some(emit), None) => (absorbed - along(emit, absorb_nm), 0.0),
+                    (Some(emit), Some(emit_nm)) if self.is_one_laser() => {
+                        (absorbed - along(emit, emit_nm), 0.0)
+                    }
                     (Some(emit), Some(emit_nm)) => (absorbed, -along(emit, emit_nm)),
                 }
             }
