@@ -16,6 +16,9 @@ LATTICE = fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)
 RAMAN = fl.RamanPair(wavelength_nm=769.0, angle_deg=31.451)
 ATOM = fl.Atom("40K")
 BANDS = LATTICE.bands(points=3)
+BEAM = fl.Beam(
+    wavelength_nm=1064, power_mw=100, waist_um=50, direction=(1, 0, 0), polarisation=(0, 0, 1)
+)
 LIMITS = {code: rest for _, code, *rest in _core.limits()}
 
 
@@ -84,6 +87,24 @@ ARGUMENTS = {
     "RamanPair tilt_deg": named(pair, "tilt_deg", TILT, optional=True),
     "directions absorb": named(directions, "absorb_wavelength_nm", WAVE),
     "directions emit": named(directions, "emit_wavelength_nm", WAVE, optional=True),
+    "circularity": Argument(
+        lambda value: ATOM.tune_outs_nm((768.0, 769.5), f=4.5, m=0.5, circularity=value),
+        "circularity",
+        "light.circularity_out_of_range",
+        optional=True,
+    ),
+    "radio amplitude": Argument(
+        lambda value: fl.radio_rabi_hz(
+            ATOM,
+            "9/2,-9/2",
+            "9/2,-7/2",
+            amplitude_gauss=value,
+            direction=(1, 0, 0),
+            field_gauss=30.0,
+        ),
+        "amplitude_gauss",
+        "radio.amplitude_out_of_range",
+    ),
     "check_flux sites": named(check, "sites", "check.sites_out_of_range"),
     "check_flux legs": named(check, "legs", "check.legs_out_of_range", optional=True),
     "check_flux budget": named(
@@ -141,6 +162,24 @@ ARGUMENTS = {
         lambda x: fl.band_energies_er(2.0, x), "quasimomenta[0]", MOMENTUM, array=True
     ),
     "fold": Argument(fl.fold, "x", "flux.out_of_range", array=True),
+    "Beam wavelength_nm": named(BEAM.replace, "wavelength_nm", WAVE),
+    "Beam power_mw": named(BEAM.replace, "power_mw", "beam.power_out_of_range"),
+    "Beam waist_um": named(BEAM.replace, "waist_um", "beam.waist_out_of_range"),
+    "Beam second waist": Argument(
+        lambda x: BEAM.replace(waist_um=(50, x)), "waist_um[1]", "beam.waist_out_of_range"
+    ),
+    "Beam focus_um": Argument(
+        lambda x: BEAM.replace(focus_um=(x, 0, 0)), "focus_um[0]", "beam.focus_out_of_range"
+    ),
+    "intensity at_um": Argument(
+        lambda x: BEAM.intensity_w_per_m2((0, x, 0)), "at_um[1]", "beam.position_out_of_range"
+    ),
+    "reflected": Argument(BEAM.reflected, "power_fraction", "beam.power_fraction_out_of_range"),
+    "ellipticity_deg": Argument(
+        lambda x: fl.polarisation.elliptical((0, 0, 1), (1, 0, 0), x),
+        "ellipticity_deg",
+        "polarisation.ellipticity_out_of_range",
+    ),
 }
 BAD_NUMBERS = [math.nan, math.inf, -math.inf, 1e300, -1e300, 0.0, -1.0]
 
@@ -364,8 +403,8 @@ def test_errors_keep_everything_when_pickled() -> None:
 
 
 def test_every_limit_is_met_by_a_test_or_belongs_to_the_file() -> None:
-    of_files = {"beam.power_out_of_range", "beam.waist_out_of_range"}
-    of_files |= {"field.magnitude_out_of_range", "time.out_of_range"}
+    of_files = {"field.magnitude_out_of_range", "time.out_of_range"}
+    of_files |= {"polarisation.angle_out_of_range"}
     elsewhere = {"flux.denominator_out_of_range", "threads.out_of_range"}
     elsewhere |= {"memory.limit_out_of_range"}
     codes = {argument.code for argument in ARGUMENTS.values()}

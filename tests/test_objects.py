@@ -29,6 +29,15 @@ ATOM = fl.Atom("40K")
 OWN_ATOM = ATOM.with_data({"D1.dipole_au": 4.1075, "mass_u": 40.0}, source="our own").with_data(
     {"D2.lifetime_s": 2.64e-8}, source="a \"quoted\" note, with 'both', \\ and \u00e9\u03bc"
 )
+BEAM = fl.Beam(
+    wavelength_nm=780.3,
+    power_mw=0.1 + 0.2,
+    waist_um=(35.0, 90.0),
+    direction=(0.3, -1.2, 2.0),
+    polarisation=fl.polarisation.elliptical((0.3, -1.2, 2.0), (1.0, 1.0, 0.2), -17.0),
+    waist_axis=(2.0, 0.5, 0.0),
+    focus_um=(120.0, -0.0, 7.5),
+)
 RIBBON = fl.check_flux(LATTICE, RAMAN, "3/8", sites=60)
 TUBE = fl.check_flux(LATTICE, DIRECTIONS, 0.37, sites=60, legs=3, closed=True)
 SOLUTION = fl.raman_wavelengths("3/8", LATTICE, range_nm=(500.0, 800.0))[0]
@@ -44,6 +53,7 @@ INPUTS = {
     "clock swapped": CLOCK.swapped(),
     "atom": ATOM,
     "atom with own data": OWN_ATOM,
+    "beam": BEAM,
 }
 RESULTS = {
     "bands": LATTICE.bands(count=3, points=7),
@@ -54,7 +64,7 @@ RESULTS = {
     "solution": SOLUTION,
 }
 DOCUMENTS = {**INPUTS, **RESULTS, "apparatus": APPARATUS}
-NAMES = {"Lattice": fl.Lattice, "RamanPair": fl.RamanPair, "Atom": fl.Atom}
+NAMES = {"Lattice": fl.Lattice, "RamanPair": fl.RamanPair, "Atom": fl.Atom, "Beam": fl.Beam}
 
 each_document = pytest.mark.parametrize("one", DOCUMENTS.values(), ids=DOCUMENTS)
 each_input = pytest.mark.parametrize("one", INPUTS.values(), ids=INPUTS)

@@ -79,7 +79,7 @@ assert_type(lattice.bands(count=2).energies_er, NDArray[np.float64])
 assert_type(fl.Lattice.from_json(lattice.to_json()), fl.Lattice)
 
 raman = fl.RamanPair.from_directions(absorb=[1, 0, 0], absorb_wavelength_nm=769)
-assert_type(raman.emit, tuple[float, float, float] | None)
+assert_type(raman.emit, tuple[float, float, float] | fl.Beam | None)
 check = fl.check_flux(lattice, raman, (3, 8), sites=60, legs=4, closed=True)
 assert_type(check.nearest[0].fraction, Fraction)
 assert_type(fl.fold(1.75), float)
@@ -88,6 +88,19 @@ assert_type(fl.raman_angles("3/8", lattice, wavelength_nm=769), tuple[fl.Solutio
 own: dict[str, float] = {"D1.dipole_au": 4.1}
 assert_type(fl.Atom("40K").with_data(own, source="ours"), fl.Atom)
 assert_type([row.name for row in fl.Atom("40K").sources()], list[str])
+beam = fl.Beam(
+    wavelength_nm=769,
+    power_mw=Decimal("0.4"),
+    waist_um=(250, 200),
+    direction=[1, 0, 0],
+    polarisation=fl.polarisation.linear((1, 0, 0), np.ones(3)),
+).replace(waist_axis=(0, 0, 1), polarisation=(0, 1, 1j))
+assert_type(beam.waist_um, float | tuple[float, float])
+assert_type(beam.polarisation, tuple[complex, complex, complex])
+assert_type(beam.intensity_w_per_m2((0, 0, 50)), float)
+assert_type(beam.intensity_w_per_m2(), float)
+assert_type(beam.reflected(0.96).intensity_w_per_m2([[0, 0, 50], [0, 0, 60]]), Numbers)
+assert_type(fl.polarisation.circular((0, 0, 1), 1), NDArray[np.complex128])
 apparatus = fl.Apparatus.load(Path("bay.toml")).replace({"field.direction": [0, 0, 1]})
 assert_type(apparatus.measured("lattice.depth_er").value, float)
 """
@@ -101,6 +114,8 @@ MISUSES = {
     'fl.check_flux(lattice, raman, 0.5, sites="60")': "arg-type",
     "fl.raman_wavelengths(0.5, lattice, range_nm=766)": "arg-type",
     "class Deeper(fl.Lattice): ...": "misc",
+    'beam.replace(polarisation="linear")': "arg-type",
+    "fl.polarisation.circular((0, 0, 1), 1j)": "arg-type",
 }
 
 

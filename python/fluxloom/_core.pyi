@@ -13,6 +13,7 @@ from typing import (
     Final,
     Generic,
     Literal,
+    SupportsComplex,
     SupportsFloat,
     SupportsIndex,
     TypeAlias,
@@ -27,27 +28,44 @@ from numpy.typing import ArrayLike, NDArray
 from pandas import DataFrame
 from xarray import DataArray
 
+from fluxloom.results import CouplingError, State, Uncertain
+
 __all__ = [
     "Apparatus",
     "Atom",
     "Bands",
+    "Beam",
     "Caution",
+    "Coupling",
     "DataSource",
     "FluxCheck",
+    "GroundLevels",
     "Lattice",
     "Measured",
     "NearFraction",
+    "Polarisability",
+    "Quality",
     "RamanPair",
+    "Ranks",
+    "Scattering",
     "Solution",
     "SourceTable",
+    "StrayCoupling",
     "Wannier",
     "band_energies_er",
     "build_info",
     "check_flux",
+    "circular_polarisation",
     "constants",
+    "elliptical_polarisation",
     "flux_of_arrays",
     "fold",
+    "lattice_depth_er",
+    "lattice_power_mw",
+    "lattice_scattering_per_s",
     "limits",
+    "linear_polarisation",
+    "radio_rabi_hz",
     "raman_angles",
     "raman_wavelengths",
     "set_memory_limit_bytes",
@@ -64,7 +82,13 @@ _Single: TypeAlias = float | Fraction | Decimal
 _Option: TypeAlias = _Real | None
 _Flux: TypeAlias = str | tuple[int, int] | Fraction | float
 _Triple: TypeAlias = tuple[float, float, float]
+# A number that may be complex.
+_Complex: TypeAlias = _Real | SupportsComplex
 _Path: TypeAlias = str | PathLike[str]
+# A hyperfine state, and one beam or several.
+_State: TypeAlias = str | Iterable[_Real]
+_Beams: TypeAlias = "Beam | Iterable[Beam]"
+_Vector: TypeAlias = Iterable[_Real] | None
 # A setting of an apparatus as it is read, and what may be given for one.
 _Setting: TypeAlias = "bool | int | float | str | list[_Setting] | dict[str, _Setting]"
 _Given: TypeAlias = (
@@ -177,19 +201,195 @@ class RamanPair(_Document["RamanPair"]):
         emit: Iterable[_Real] | None = None,
         emit_wavelength_nm: _Option = None,
     ) -> RamanPair: ...
+    @staticmethod
+    def from_beams(*, absorb: Beam, emit: Beam) -> RamanPair: ...
+    def with_beams(self, *, absorb: Beam, emit: Beam) -> RamanPair: ...
     wavelength_nm: Final[float | None]
     angle_deg: Final[float | None]
     tilt_deg: Final[float | None]
-    absorb: Final[_Triple | None]
+    absorb: Final[_Triple | Beam | None]
     absorb_wavelength_nm: Final[float | None]
-    emit: Final[_Triple | None]
+    emit: Final[_Triple | Beam | None]
     emit_wavelength_nm: Final[float | None]
     roles_swapped: Final[bool]
-    beams: Final[object]
+    beams: Final[tuple[Beam, Beam]]
     def flux(self, lattice: Lattice) -> float: ...
     def kick(self, lattice: Lattice) -> float: ...
     def swapped(self) -> RamanPair: ...
-    def replace(self, **changes: _Real | Iterable[_Real] | None) -> RamanPair: ...
+    def replace(self, **changes: _Real | Iterable[_Real] | Beam | None) -> RamanPair: ...
+    @overload
+    def rabi_hz(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[False] = False,
+    ) -> complex: ...
+    @overload
+    def rabi_hz(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[True],
+    ) -> Uncertain[complex, float]:
+        """Complex Rabi frequency of b <- a, over 2 pi."""
+
+    def rabi_matrix_hz(
+        self, atom: Atom, *, field_gauss: _Real, field_direction: _Vector = (0, 0, 1)
+    ) -> NDArray[np.complex128]:
+        """Rabi frequencies between all states, ``[b, a]``; the field is along z unless said."""
+
+    @overload
+    def coupling(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+        lattice: Lattice | None = None,
+        uncertainty: Literal[False] = False,
+    ) -> Coupling: ...
+    @overload
+    def coupling(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+        lattice: Lattice | None = None,
+        uncertainty: Literal[True],
+    ) -> Uncertain[Coupling, CouplingError]:
+        """Explain the coupling b <- a."""
+
+    def stray_couplings(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+        reflection: _Option = 0.005,
+    ) -> tuple[StrayCoupling, ...]:
+        """Every other way in which the beams drive b <- a (0.5 % reflected)."""
+
+    def quality(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        range_nm: Iterable[_Real],
+        field_gauss: _Real,
+        points: _Option = 1001,
+        field_direction: _Vector = (0, 0, 1),
+    ) -> Quality:
+        """Coupling over scattering at 1001 wavelengths of a range."""
+
+    def on_resonance(
+        self,
+        atom: Atom,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Real,
+        field_direction: _Vector = (0, 0, 1),
+    ) -> RamanPair:
+        """Tune the tones to the splitting in a field, along z unless said."""
+
+@final
+class Coupling(_Document["Coupling"]):
+    """A two-photon coupling with its explanation."""
+
+    a: Final[State]
+    b: Final[State]
+    rabi_hz: Final[complex]
+    effective_rabi_hz: Final[complex]
+    kick: Final[float | None]
+    ranks: Final[Ranks]
+    relative: Final[float]
+    forbidden: Final[bool]
+    rule: Final[str]
+    alternatives: Final[tuple[str, ...]]
+
+@final
+class Ranks(_Value):
+    """The parts of a coupling by tensor rank."""
+
+    def __new__(cls, scalar: _Complex, vector: _Complex, tensor: _Complex) -> Ranks: ...
+    scalar: Final[complex]
+    vector: Final[complex]
+    tensor: Final[complex]
+    def __len__(self) -> int: ...
+    def __getitem__(self, rank: SupportsIndex, /) -> complex: ...
+    def __iter__(self) -> Iterator[complex]: ...
+
+@final
+class StrayCoupling(_Document["StrayCoupling"]):
+    """A coupling that nobody asked for."""
+
+    absorb: Final[str]
+    emit: Final[str]
+    rabi_hz: Final[complex]
+    pair: Final[RamanPair]
+
+@final
+class Quality(_Document["Quality"]):
+    """Coupling over scattering against wavelength."""
+
+    wavelengths_nm: Final[NDArray[np.float64]]
+    rabi_hz: Final[NDArray[np.float64]]
+    scattering_per_s: Final[NDArray[np.float64]]
+    ratio: Final[NDArray[np.float64]]
+    best_wavelength_nm: Final[float]
+    best_ratio: Final[float]
+    excluded_nm: Final[tuple[tuple[float, float], ...]]
+    def plot(self, ax: Axes | None = None) -> Axes: ...
+    def to_pandas(self) -> DataFrame: ...
+
+@final
+class Beam(_Document["Beam"]):
+    """A Gaussian laser beam."""
+
+    def __new__(
+        cls,
+        *,
+        wavelength_nm: _Real,
+        power_mw: _Real,
+        waist_um: _Real | Iterable[_Real],
+        direction: Iterable[_Real],
+        polarisation: Iterable[_Complex],
+        waist_axis: Iterable[_Real] | None = None,
+        focus_um: Iterable[_Real] | None = (0, 0, 0),
+    ) -> Beam: ...
+    wavelength_nm: Final[float]
+    power_mw: Final[float]
+    waist_um: Final[float | tuple[float, float]]
+    direction: Final[_Triple]
+    polarisation: Final[tuple[complex, complex, complex]]
+    waist_axis: Final[_Triple | None]
+    focus_um: Final[_Triple]
+    @overload
+    def intensity_w_per_m2(
+        self, at_um: tuple[_Single, _Single, _Single] | None = (0, 0, 0)
+    ) -> float: ...
+    @overload
+    def intensity_w_per_m2(self, at_um: ArrayLike) -> float | NDArray[np.float64]:
+        """Intensity at a point, the origin unless given, or at points ``[..., 3]``."""
+
+    def reflected(self, power_fraction: _Real) -> Beam: ...
+    def replace(self, **changes: _Real | Iterable[_Complex] | None) -> Beam: ...
 
 @final
 class Solution(_Document["Solution"]):
@@ -224,7 +424,150 @@ class Atom(_Document["Atom"]):
     @overload
     def recoil_m_per_s(self, wavelength_nm: ArrayLike) -> float | NDArray[np.float64]: ...
     def sources(self) -> SourceTable: ...
+    def strength_ratios(self) -> tuple[DataSource, ...]: ...
     def with_data(self, numbers: Mapping[str, _Real], *, source: str) -> Atom: ...
+    def ground_levels(self, field_gauss: _Real) -> GroundLevels: ...
+    def insensitive_fields_gauss(
+        self, a: _State, b: _State, *, range_gauss: Iterable[_Real]
+    ) -> tuple[float, ...]: ...
+    @overload
+    def polarisability_au(
+        self, wavelength_nm: ArrayLike, f: _Real, *, uncertainty: Literal[False] = False
+    ) -> Polarisability: ...
+    @overload
+    def polarisability_au(
+        self, wavelength_nm: ArrayLike, f: _Real, *, uncertainty: Literal[True]
+    ) -> Uncertain[Polarisability, Polarisability]:
+        """Scalar, vector and tensor polarisability of F."""
+
+    def static_polarisability_au(self, f: _Real) -> Polarisability: ...
+    @overload
+    def tune_out_nm(
+        self,
+        range_nm: Iterable[_Real],
+        *,
+        f: _Real,
+        m: _Option = None,
+        circularity: _Option = 0.0,
+        uncertainty: Literal[False] = False,
+    ) -> float: ...
+    @overload
+    def tune_out_nm(
+        self,
+        range_nm: Iterable[_Real],
+        *,
+        f: _Real,
+        m: _Option = None,
+        circularity: _Option = 0.0,
+        uncertainty: Literal[True],
+    ) -> Uncertain[float, float]:
+        """Find the one tune-out in a range, scalar unless m is given."""
+
+    def tune_outs_nm(
+        self,
+        range_nm: Iterable[_Real],
+        *,
+        f: _Real,
+        m: _Option = None,
+        circularity: _Option = 0.0,
+    ) -> tuple[float, ...]:
+        """Every tune-out in a range, for linear light (circularity 0) unless said."""
+
+    @overload
+    def light_shift_hz(
+        self,
+        beams: _Beams,
+        f: _Real,
+        m: _Real,
+        *,
+        field_gauss: _Option = 0.0,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[False] = False,
+    ) -> float: ...
+    @overload
+    def light_shift_hz(
+        self,
+        beams: _Beams,
+        f: _Real,
+        m: _Real,
+        *,
+        field_gauss: _Option = 0.0,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[True],
+    ) -> Uncertain[float, float]:
+        """Light shift of a state, without a field along z unless said."""
+
+    def differential_shift_hz(
+        self,
+        beams: _Beams,
+        a: _State,
+        b: _State,
+        *,
+        field_gauss: _Option = 0.0,
+        field_direction: _Vector = (0, 0, 1),
+    ) -> float:
+        """Change of E(b) - E(a) by the light, without a field unless said."""
+
+    @overload
+    def scattering_per_s(
+        self,
+        beams: _Beams,
+        f: _Real,
+        m: _Real,
+        *,
+        field_gauss: _Option = 0.0,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[False] = False,
+    ) -> Scattering: ...
+    @overload
+    def scattering_per_s(
+        self,
+        beams: _Beams,
+        f: _Real,
+        m: _Real,
+        *,
+        field_gauss: _Option = 0.0,
+        field_direction: _Vector = (0, 0, 1),
+        uncertainty: Literal[True],
+    ) -> Uncertain[Scattering, Scattering]:
+        """Photons that a state scatters, without a field along z unless said."""
+
+@final
+class GroundLevels(_Document["GroundLevels"]):
+    """The levels of an atom at one magnetic field."""
+
+    atom: Final[Atom]
+    field_gauss: Final[float]
+    states: Final[tuple[State, ...]]
+    f: Final[NDArray[np.float64]]
+    m: Final[NDArray[np.float64]]
+    energies_hz: Final[NDArray[np.float64]]
+    def energy_hz(self, f: _Real, m: _Real) -> float: ...
+    def splitting_hz(self, a: _State, b: _State) -> float: ...
+    def moment_hz_per_gauss(self, f: _Real, m: _Real) -> float: ...
+    def curvature_hz_per_gauss2(self, f: _Real, m: _Real) -> float: ...
+    def vector(self, f: _Real, m: _Real) -> NDArray[np.float64]: ...
+    def to_pandas(self) -> DataFrame: ...
+
+@final
+class Polarisability(_Document["Polarisability"]):
+    """Polarisabilities of one F."""
+
+    scalar: Final[float | NDArray[np.float64]]
+    vector: Final[float | NDArray[np.float64]]
+    tensor: Final[float | NDArray[np.float64]]
+
+@final
+class Scattering(_Document["Scattering"]):
+    """Photons per second that a state scatters."""
+
+    state: Final[State]
+    total: Final[float]
+    rayleigh: Final[float]
+    raman: Final[float]
+    to: Final[dict[State, float]]
+    heating_hz_per_s: Final[float]
+    def __float__(self) -> float: ...
 
 @final
 class DataSource(_Document["DataSource"]):
@@ -367,6 +710,19 @@ def band_energies_er(
 ) -> NDArray[np.float64]:
     """Compute the ``count`` (4) lowest energies, ``[depth, quasimomentum, band]``."""
 
+def linear_polarisation(
+    direction: Iterable[_Real], along: Iterable[_Real]
+) -> NDArray[np.complex128]:
+    """Linear light; use ``fluxloom.polarisation.linear``."""
+
+def circular_polarisation(direction: Iterable[_Real], helicity: _Real) -> NDArray[np.complex128]:
+    """Circular light; use ``fluxloom.polarisation.circular``."""
+
+def elliptical_polarisation(
+    direction: Iterable[_Real], along: Iterable[_Real], ellipticity_deg: _Real
+) -> NDArray[np.complex128]:
+    """Elliptical light; use ``fluxloom.polarisation.elliptical``."""
+
 def raman_wavelengths(
     target: _Flux,
     lattice: Lattice,
@@ -386,6 +742,49 @@ def raman_angles(
     range_deg: Iterable[_Real] | None = (0, 180),
 ) -> tuple[Solution, ...]:
     """All crossing angles in a range (0 to 180 deg) that reach a target flux."""
+
+def radio_rabi_hz(
+    atom: Atom,
+    a: _State,
+    b: _State,
+    *,
+    amplitude_gauss: _Real,
+    direction: Iterable[_Real],
+    field_gauss: _Real,
+    field_direction: _Vector = (0, 0, 1),
+) -> complex:
+    """Rabi frequency by an oscillating field; the bias is along z unless said."""
+
+def lattice_depth_er(
+    atom: Atom,
+    beams: _Beams,
+    *,
+    state: _State,
+    field_gauss: _Option = 0.0,
+    field_direction: _Vector = (0, 0, 1),
+) -> float:
+    """Depth of the lattice that a state sees, without a field unless said."""
+
+def lattice_power_mw(
+    atom: Atom,
+    beams: _Beams,
+    *,
+    depth_er: _Real,
+    state: _State,
+    field_gauss: _Option = 0.0,
+    field_direction: _Vector = (0, 0, 1),
+) -> float:
+    """Power of the first beam for a depth, without a field unless said."""
+
+def lattice_scattering_per_s(
+    atom: Atom,
+    beams: _Beams,
+    *,
+    state: _State,
+    field_gauss: _Option = 0.0,
+    field_direction: _Vector = (0, 0, 1),
+) -> Scattering:
+    """Scattering of atoms on the sites, without a field unless said."""
 
 def set_threads(threads: _Real) -> None:
     """Set the number of threads that work is spread over."""

@@ -32,6 +32,7 @@ __all__ = [
     "bands_html",
     "bands_to_xarray",
     "check_html",
+    "html_table",
     "sources_html",
     "sources_to_pandas",
 ]
@@ -186,6 +187,29 @@ def sources_html(table: SourceTable) -> str:
     ]
     heads = ["name", "value", "unit", "status", "source"]
     return _frame(_table(heads, rows, figures=(1,)))
+
+
+def html_table(
+    title: str, heads: Sequence[str], rows: Iterable[Sequence[str]], figures: Iterable[int] = ()
+) -> str:
+    """Lay out a table of plain texts under a title.
+
+    Parameters
+    ----------
+    title : str
+    heads : sequence of str
+        Heads of the columns.
+    rows : iterable of sequences of str
+    figures : iterable of int
+        Columns of numbers, set to the right.
+
+    Returns
+    -------
+    str
+        HTML; every text is escaped.
+    """
+    cells = [[escape(text) for text in row] for row in rows]
+    return _frame(f"<div>{escape(title)}</div>" + _table(heads, cells, figures))
 
 
 def _rows(table: SourceTable) -> list[DataSource]:

@@ -27,7 +27,8 @@ _SMALL = 8.0
 _Place: TypeAlias = Literal["best", "upper right", "lower right", "lower left", "upper left"]
 
 
-def _axes(ax: "Axes | None", size_inches: tuple[float, float]) -> "Axes":
+def new_axes(ax: "Axes | None", size_inches: tuple[float, float]) -> "Axes":
+    """Return the axes given, or those of a new figure of a size in inches."""
     if ax is not None:
         return ax
     try:
@@ -60,7 +61,7 @@ def bands(bands: Bands, ax: "Axes | None" = None, *, atom: Atom | None = None) -
     ImportError
         If matplotlib is not installed.
     """
-    ax = _axes(ax, (6.4, 5.6))
+    ax = new_axes(ax, (6.4, 5.6))
     lattice = bands.lattice
     momenta, energies = np.asarray(bands.quasimomenta), np.asarray(bands.energies_er)
     for band, values in enumerate(energies):
@@ -159,7 +160,7 @@ def wannier(wannier: Wannier, ax: "Axes | None" = None) -> "Axes":
     ImportError
         If matplotlib is not installed.
     """
-    ax = _axes(ax, (6.4, 3.6))
+    ax = new_axes(ax, (6.4, 3.6))
     ax.axhline(0.0, color=ax.xaxis.label.get_color(), lw=0.6)
     ax.fill_between(wannier.x_nm, wannier.amplitude, color=SKY, alpha=0.25, lw=0)
     ax.plot(wannier.x_nm, wannier.amplitude, color=BLUE, lw=1.6)
@@ -205,7 +206,7 @@ def flux_check(
     """
     plane = FluxPlane(check)
     low, high = plane.default_range_nm() if range_nm is None else plane.checked_range_nm(range_nm)
-    ax = _axes(ax, (6.8, 5.0))
+    ax = new_axes(ax, (6.8, 5.0))
     fluxes = plane.flux([low, high])
     shown = [float(fluxes.min()), float(fluxes.max())]
     if not plane.branches(*shown):

@@ -105,6 +105,14 @@ impl PyAtom {
         PySourceTable { atom: self.inner.clone(), rows: self.inner.sources() }
     }
 
+    /// Measured ratios of line strengths, d_over^2/d_under^2, with which one of two
+    /// dipole elements of the table was obtained: they join the uncertainties of
+    /// both, and a tune-out owes most of its accuracy to them.
+    fn strength_ratios<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
+        let rows = self.inner.strength_ratios();
+        PyTuple::new(py, rows.into_iter().map(|inner| PyDataSource { inner }))
+    }
+
     /// The same atom with own numbers; what follows from them follows.
     ///
     /// Parameters

@@ -10,7 +10,7 @@ use fluxloom_core::rational::{Flux, Fraction};
 use numpy::{IntoPyArray, PyArrayDyn, PyArrayMethods, PyReadonlyArrayDyn, ndarray::ArrayD};
 use pyo3::exceptions::PyTypeError;
 use pyo3::prelude::*;
-use pyo3::types::{PyBool, PyFloat, PyInt, PyMapping, PyString, PyTuple};
+use pyo3::types::{PyBool, PyBytes, PyFloat, PyInt, PyMapping, PyString, PyTuple};
 
 use crate::errors::{raise_core, wrong_type};
 
@@ -38,7 +38,7 @@ pub fn number(value: &Bound<'_, PyAny>, field: &str) -> PyResult<f64> {
 const REAL_KINDS: [&str; 3] = ["i", "u", "f"];
 
 /// The letter for the kind of numpy's numbers and arrays; none for anything else.
-fn dtype_kind(value: &Bound<'_, PyAny>) -> PyResult<Option<String>> {
+pub fn dtype_kind(value: &Bound<'_, PyAny>) -> PyResult<Option<String>> {
     let Some(dtype) = value.getattr_opt("dtype")? else { return Ok(None) };
     match dtype.getattr_opt("kind")? {
         Some(kind) => Ok(kind.extract().ok()),
@@ -120,13 +120,13 @@ pub fn python_fraction(py: Python<'_>, fraction: Fraction) -> PyResult<Bound<'_,
         .call1((fraction.numerator(), fraction.denominator()))
 }
 
-/// The items of a sequence; a text is none.
-fn items<'py>(
+/// The items of a sequence; a text is none, and bytes are no numbers.
+pub fn items<'py>(
     value: &Bound<'py, PyAny>,
     field: &str,
     wanted: &str,
 ) -> PyResult<Vec<Bound<'py, PyAny>>> {
-    if value.is_instance_of::<PyString>() {
+    if value.is_instance_of::<PyString>() || value.is_instance_of::<PyBytes>() {
         return Err(wrong_type(field, value, wanted));
     }
     value.try_iter().and_then(Iterator::collect).map_err(|_| wrong_type(field, value, wanted))

@@ -9,14 +9,20 @@
 mod apparatus;
 mod atom;
 mod bands;
+mod beam;
 mod check;
 mod convert;
+mod coupling;
 mod documents;
 mod enter;
 mod errors;
 mod functions;
 mod lattice;
+mod levels;
+mod light;
+mod polarisability;
 mod raman;
+mod state;
 
 use pyo3::prelude::*;
 
@@ -76,13 +82,27 @@ mod _core {
     #[pymodule_export]
     use super::bands::{PyBands, PyWannier};
     #[pymodule_export]
+    use super::beam::{
+        PyBeam, circular_polarisation, elliptical_polarisation, linear_polarisation,
+    };
+    #[pymodule_export]
     use super::check::{PyFluxCheck, PyNearFraction, check_flux};
+    #[pymodule_export]
+    use super::coupling::{PyCoupling, PyQuality, PyRanks, PyStrayCoupling};
     #[pymodule_export]
     use super::functions::{
         band_energies_er, flux_of_arrays, fold, raman_angles, raman_wavelengths,
     };
     #[pymodule_export]
     use super::lattice::PyLattice;
+    #[pymodule_export]
+    use super::levels::{PyGroundLevels, radio_rabi_hz};
+    #[pymodule_export]
+    use super::light::{
+        PyScattering, lattice_depth_er, lattice_power_mw, lattice_scattering_per_s,
+    };
+    #[pymodule_export]
+    use super::polarisability::PyPolarisability;
     #[pymodule_export]
     use super::raman::{PyRamanPair, PySolution};
     #[pymodule_export]

@@ -1,13 +1,14 @@
 //! `RamanPair` and the `Solution` of an inverse problem.
 
 use fluxloom_core::flux::Solution;
-use fluxloom_core::{Crossing, Directions, RamanPair};
+use fluxloom_core::{Beam, Crossing, Directions, RamanPair};
 use pyo3::prelude::*;
 use pyo3::types::PyDict;
 
+use crate::beam::PyBeam;
 use crate::convert::{number, vector};
 use crate::documents::{self, document};
-use crate::errors::raise_core;
+use crate::errors::{raise_core, wrong_type};
 use crate::lattice::PyLattice;
 
 /// The light of one Raman link: two beams of one wavelength crossing at an angle.
@@ -87,6 +88,46 @@ impl PyRamanPair {
         Ok(Self { inner: inner.map_err(|error| raise_core(py, error))? })
     }
 
+    /// Two beams with all that is known of them: the form that has couplings.
+    ///
+    /// Parameters
+    /// ----------
+    /// absorb, emit : Beam
+    ///     The beams that photons are absorbed from and emitted into.
+    ///
+    /// Examples
+    /// --------
+    /// >>> import fluxloom as fl
+    /// >>> def beam(direction, polarisation):
+    /// ...     return fl.Beam(wavelength_nm=769.0, power_mw=0.5, waist_um=200.0,
+    /// ...                    direction=direction, polarisation=polarisation)
+    /// >>> pair = fl.RamanPair.from_beams(absorb=beam((0, 1, 0), (0, 0, 1)),
+    /// ...                                emit=beam((1, 0, 0), (0, 1, 0)))
+    /// >>> round(pair.flux(fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)), 4)
+    /// -0.6918
+    #[staticmethod]
+    #[pyo3(signature = (*, absorb, emit))]
+    fn from_beams(
+        py: Python<'_>,
+        absorb: &Bound<'_, PyAny>,
+        emit: &Bound<'_, PyAny>,
+    ) -> PyResult<Self> {
+        let inner = RamanPair::from_beams(beam(absorb, "absorb")?, beam(emit, "emit")?);
+        Ok(Self { inner: inner.map_err(|error| raise_core(py, error))? })
+    }
+
+    /// This pair, given by its crossing angle, with the beams that cross so.
+    #[pyo3(signature = (*, absorb, emit))]
+    fn with_beams(
+        &self,
+        py: Python<'_>,
+        absorb: &Bound<'_, PyAny>,
+        emit: &Bound<'_, PyAny>,
+    ) -> PyResult<Self> {
+        let inner = self.inner.with_beams(beam(absorb, "absorb")?, beam(emit, "emit")?);
+        Ok(Self { inner: inner.map_err(|error| raise_core(py, error))? })
+    }
+
     /// Vacuum wavelength; None for a pair given by directions.
     #[getter]
     fn wavelength_nm(&self) -> Option<f64> {
@@ -105,10 +146,11 @@ impl PyRamanPair {
         self.inner.as_crossing().map(|crossing| crossing.tilt_deg)
     }
 
-    /// Direction of the absorbed beam; None for a pair given by its angle.
+    /// Direction of the absorbed beam, or the beam of a pair built from beams; None
+    /// for a pair given by its angle.
     #[getter]
-    fn absorb(&self) -> Option<(f64, f64, f64)> {
-        self.inner.as_directions().map(|directions| directions.absorb.into())
+    fn absorb<'py>(&self, py: Python<'py>) -> PyResult<Option<Bound<'py, PyAny>>> {
+        self.role(py, 0)
     }
 
     /// Wavelength of the absorbed beam; None for a pair given by its angle.
@@ -117,10 +159,11 @@ impl PyRamanPair {
         self.inner.as_directions().map(|directions| directions.absorb_wavelength_nm)
     }
 
-    /// Direction of the emitted beam, if there is one.
+    /// Direction of the emitted beam, if there is one, or the beam of a pair built
+    /// from beams.
     #[getter]
-    fn emit(&self) -> Option<(f64, f64, f64)> {
-        self.inner.as_directions().and_then(|directions| directions.emit).map(Into::into)
+    fn emit<'py>(&self, py: Python<'py>) -> PyResult<Option<Bound<'py, PyAny>>> {
+        self.role(py, 1)
     }
 
     /// Wavelength of the emitted beam, if it was given.
@@ -135,10 +178,12 @@ impl PyRamanPair {
         self.inner.roles_swapped()
     }
 
-    /// The beams of the pair: a pair given by its geometry has none.
+    /// The beams in the roles they play, absorbed and emitted; a pair given by its
+    /// geometry has none (``raman.no_beams``).
     #[getter]
-    fn beams(&self, py: Python<'_>) -> PyResult<Py<PyAny>> {
-        Err(raise_core(py, fluxloom_core::Error::NoBeams))
+    fn beams(&self, py: Python<'_>) -> PyResult<(PyBeam, PyBeam)> {
+        let [absorb, emit] = self.inner.beams().map_err(|error| raise_core(py, error))?;
+        Ok((PyBeam { inner: absorb }, PyBeam { inner: emit }))
     }
 
     /// Flux per plaquette on a lattice, signed and unfolded, in flux quanta.
@@ -156,7 +201,8 @@ impl PyRamanPair {
         Self { inner: self.inner.swapped() }
     }
 
-    /// The same pair with some arguments changed.
+    /// The same pair with some arguments changed. One that was given by its angle
+    /// loses its beams: they no longer cross so.
     #[pyo3(signature = (**changes))]
     fn replace<'py>(
         slf: &Bound<'py, Self>,
@@ -165,6 +211,9 @@ impl PyRamanPair {
         let class = slf.get_type().into_any();
         let pair = if slf.get().inner.as_crossing().is_some() {
             documents::replace(slf, &class, &["wavelength_nm", "angle_deg", "tilt_deg"], changes)?
+        } else if slf.get().inner.has_beams() {
+            let names = ["absorb", "emit"];
+            documents::replace(slf, &class.getattr("from_beams")?, &names, changes)?
         } else {
             let names = ["absorb", "absorb_wavelength_nm", "emit", "emit_wavelength_nm"];
             documents::replace(slf, &class.getattr("from_directions")?, &names, changes)?
@@ -173,17 +222,44 @@ impl PyRamanPair {
     }
 
     fn __repr__(&self) -> String {
-        let form = self.inner.as_crossing().map_or_else(
-            || self.inner.as_directions().map_or_else(String::new, directions_text),
-            |Crossing { wavelength_nm, angle_deg, tilt_deg }| {
+        let inner = &self.inner;
+        let beams = inner.given_beams().map(|[absorb, emit]| {
+            let text = |inner| PyBeam { inner }.text();
+            format!("absorb={}, emit={}", text(absorb), text(emit))
+        });
+        let form = match (inner.as_crossing(), inner.as_directions(), beams) {
+            (Some(crossing), _, beams) => {
+                let Crossing { wavelength_nm, angle_deg, tilt_deg } = crossing;
+                let light = beams.map_or_else(String::new, |b| format!(".with_beams({b})"));
                 format!(
                     "RamanPair(wavelength_nm={wavelength_nm:?}, angle_deg={angle_deg:?}, \
-                     tilt_deg={tilt_deg:?})"
+                     tilt_deg={tilt_deg:?}){light}"
                 )
-            },
-        );
+            }
+            (None, _, Some(beams)) => format!("RamanPair.from_beams({beams})"),
+            (None, directions, None) => directions.map_or_else(String::new, directions_text),
+        };
         if self.inner.roles_swapped() { form + ".swapped()" } else { form }
     }
+}
+
+impl PyRamanPair {
+    /// What was given for the absorbed (0) or emitted (1) beam.
+    fn role<'py>(&self, py: Python<'py>, place: usize) -> PyResult<Option<Bound<'py, PyAny>>> {
+        let Some(directions) = self.inner.as_directions() else { return Ok(None) };
+        if let Some(beams) = self.inner.given_beams() {
+            let given = beams.get(place).copied();
+            return given.map(|inner| Ok(Bound::new(py, PyBeam { inner })?.into_any())).transpose();
+        }
+        let direction = if place == 0 { Some(directions.absorb) } else { directions.emit };
+        let tuple = |[x, y, z]: [f64; 3]| Ok((x, y, z).into_pyobject(py)?.into_any());
+        direction.map(tuple).transpose()
+    }
+}
+
+fn beam(value: &Bound<'_, PyAny>, field: &str) -> PyResult<Beam> {
+    let found = value.cast::<PyBeam>().map_err(|_| wrong_type(field, value, "a Beam"))?;
+    Ok(found.get().inner)
 }
 
 fn directions_text(directions: Directions) -> String {
