@@ -87,7 +87,7 @@ _Complex: TypeAlias = _Real | SupportsComplex
 _Path: TypeAlias = str | PathLike[str]
 # A hyperfine state, and one beam or several.
 _State: TypeAlias = str | Iterable[_Real]
-_Beams: TypeAlias = "Beam | Iterable[Beam]"
+_Beams: TypeAlias = "Beam | RamanPair | Iterable[Beam]"
 _Vector: TypeAlias = Iterable[_Real] | None
 # A setting of an apparatus as it is read, and what may be given for one.
 _Setting: TypeAlias = "bool | int | float | str | list[_Setting] | dict[str, _Setting]"
@@ -312,6 +312,8 @@ class RamanPair(_Document["RamanPair"]):
 class Coupling(_Document["Coupling"]):
     """A two-photon coupling with its explanation."""
 
+    atom: Final[Atom]
+    sources: Final[SourceTable]
     a: Final[State]
     b: Final[State]
     rabi_hz: Final[complex]
@@ -339,6 +341,8 @@ class Ranks(_Value):
 class StrayCoupling(_Document["StrayCoupling"]):
     """A coupling that nobody asked for."""
 
+    atom: Final[Atom]
+    sources: Final[SourceTable]
     absorb: Final[str]
     emit: Final[str]
     rabi_hz: Final[complex]
@@ -348,6 +352,8 @@ class StrayCoupling(_Document["StrayCoupling"]):
 class Quality(_Document["Quality"]):
     """Coupling over scattering against wavelength."""
 
+    atom: Final[Atom]
+    sources: Final[SourceTable]
     wavelengths_nm: Final[NDArray[np.float64]]
     rabi_hz: Final[NDArray[np.float64]]
     scattering_per_s: Final[NDArray[np.float64]]
@@ -537,6 +543,7 @@ class GroundLevels(_Document["GroundLevels"]):
     """The levels of an atom at one magnetic field."""
 
     atom: Final[Atom]
+    sources: Final[SourceTable]
     field_gauss: Final[float]
     states: Final[tuple[State, ...]]
     f: Final[NDArray[np.float64]]
@@ -553,6 +560,8 @@ class GroundLevels(_Document["GroundLevels"]):
 class Polarisability(_Document["Polarisability"]):
     """Polarisabilities of one F."""
 
+    atom: Final[Atom]
+    sources: Final[SourceTable]
     scalar: Final[float | NDArray[np.float64]]
     vector: Final[float | NDArray[np.float64]]
     tensor: Final[float | NDArray[np.float64]]
@@ -561,6 +570,8 @@ class Polarisability(_Document["Polarisability"]):
 class Scattering(_Document["Scattering"]):
     """Photons per second that a state scatters."""
 
+    atom: Final[Atom]
+    sources: Final[SourceTable]
     state: Final[State]
     total: Final[float]
     rayleigh: Final[float]

@@ -101,7 +101,7 @@ impl PyAtom {
     }
 
     /// Every number behind this atom, with uncertainty, unit, status and source.
-    fn sources(&self) -> PySourceTable {
+    pub fn sources(&self) -> PySourceTable {
         PySourceTable { atom: self.inner.clone(), rows: self.inner.sources() }
     }
 

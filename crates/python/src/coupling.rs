@@ -6,7 +6,7 @@ use numpy::{Complex64, IntoPyArray, PyArrayMethods};
 use pyo3::prelude::*;
 use pyo3::types::{PyComplex, PyTuple};
 
-use crate::atom::PyAtom;
+use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::{number, pair as range, shaped, size};
 use crate::documents::document;
 use crate::enter;
@@ -25,6 +25,18 @@ document!(PyCoupling);
 
 #[pymethods]
 impl PyCoupling {
+    /// The atom.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.inner.atom.clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
+    }
+
     /// The state a.
     #[getter]
     fn a<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -170,6 +182,18 @@ document!(PyStrayCoupling);
 
 #[pymethods]
 impl PyStrayCoupling {
+    /// The atom.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.inner.atom.clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
+    }
+
     /// Where the photon is absorbed from: ``"absorb"``, ``"emit"``, or one of
     /// them, reflected.
     #[getter]
@@ -213,6 +237,18 @@ document!(PyQuality);
 
 #[pymethods]
 impl PyQuality {
+    /// The atom.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.inner.atom.clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
+    }
+
     /// Vacuum wavelengths, ascending; those too near to a line are left out.
     #[getter]
     fn wavelengths_nm<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {

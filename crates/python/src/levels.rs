@@ -6,7 +6,7 @@ use numpy::Complex64;
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 
-use crate::atom::PyAtom;
+use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::{number, pair as range, shaped, vector};
 use crate::documents::document;
 use crate::enter;
@@ -21,7 +21,7 @@ use crate::state::{bias, pair, python_state, state, warn_unconfirmed};
 /// Examples
 /// --------
 /// >>> import fluxloom as fl
-/// >>> levels = fl.Atom("133Cs").with_data({"g_j": 2.00254032}, source="own").ground_levels(0.0)
+/// >>> levels = fl.Atom("133Cs").ground_levels(0.0)
 /// >>> levels.splitting_hz((3, 0), (4, 0))
 /// 9192631770.0
 #[pyclass(frozen, eq, module = "fluxloom", name = "GroundLevels")]
@@ -38,6 +38,12 @@ impl PyGroundLevels {
     #[getter]
     fn atom(&self) -> PyAtom {
         PyAtom { inner: self.inner.atom().clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
     }
 
     /// The field.

@@ -5,7 +5,7 @@ use fluxloom_core::light::Scattering;
 use pyo3::prelude::*;
 use pyo3::types::PyDict;
 
-use crate::atom::PyAtom;
+use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::number;
 use crate::documents::document;
 use crate::enter;
@@ -22,6 +22,18 @@ document!(PyScattering);
 
 #[pymethods]
 impl PyScattering {
+    /// The atom.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.inner.atom.clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
+    }
+
     /// The state that scatters.
     #[getter]
     fn state<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -83,7 +95,7 @@ impl PyAtom {
     ///
     /// Parameters
     /// ----------
-    /// beams : Beam or list of Beam
+    /// beams : Beam, RamanPair or list of Beam
     /// f, m : float
     ///     The state; without a field it is quantised along ``field_direction``.
     /// field_gauss : float

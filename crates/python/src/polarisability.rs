@@ -1,13 +1,13 @@
 //! Polarisabilities and tune-outs of an atom.
 
-use fluxloom_core::Document;
 use fluxloom_core::control::{allow_numbers, go_on};
 use fluxloom_core::light::{Polarisability, TuneOut};
+use fluxloom_core::{Atom, Document};
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 use serde::{Deserialize, Serialize};
 
-use crate::atom::PyAtom;
+use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::{Numbers, number, numbers, pair, shaped};
 use crate::documents::document;
 use crate::enter;
@@ -17,6 +17,7 @@ use crate::state::{uncertain, warn_light};
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(try_from = "RawTable", into = "RawTable")]
 pub struct Table {
+    atom: Atom,
     shape: Vec<usize>,
     rows: Vec<Polarisability>,
 }
@@ -24,6 +25,7 @@ pub struct Table {
 #[derive(Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 struct RawTable {
+    atom: Atom,
     shape: Vec<usize>,
     scalar: Vec<f64>,
     vector: Vec<f64>,
@@ -42,6 +44,7 @@ impl From<Table> for RawTable {
             vector: column(|row| row.vector),
             tensor: column(|row| row.tensor),
             shape: table.shape,
+            atom: table.atom,
         }
     }
 }
@@ -59,7 +62,7 @@ impl TryFrom<RawTable> for Table {
         let rows = columns
             .map(|((scalar, vector), tensor)| Polarisability { scalar, vector, tensor })
             .collect();
-        Ok(Self { shape: raw.shape, rows })
+        Ok(Self { atom: raw.atom, shape: raw.shape, rows })
     }
 }
 
@@ -75,6 +78,18 @@ document!(PyPolarisability);
 
 #[pymethods]
 impl PyPolarisability {
+    /// The atom.
+    #[getter]
+    fn atom(&self) -> PyAtom {
+        PyAtom { inner: self.inner.atom.clone() }
+    }
+
+    /// The numbers behind the result.
+    #[getter]
+    fn sources(&self) -> PySourceTable {
+        self.atom().sources()
+    }
+
     /// The scalar polarisability.
     #[getter]
     fn scalar<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -104,8 +119,8 @@ impl PyPolarisability {
 }
 
 impl PyPolarisability {
-    fn one(alpha: Polarisability) -> Self {
-        Self { inner: Table { shape: Vec::new(), rows: vec![alpha] } }
+    fn one(atom: &Atom, alpha: Polarisability) -> Self {
+        Self { inner: Table { atom: atom.clone(), shape: Vec::new(), rows: vec![alpha] } }
     }
 
     fn column<'py>(
@@ -180,7 +195,7 @@ impl PyAtom {
                 Ok::<_, fluxloom_core::Error>(rows)
             })?;
             warn_light(py, self)?;
-            let found = PyPolarisability { inner: Table { shape, rows } };
+            let found = PyPolarisability { inner: Table { atom: atom.clone(), shape, rows } };
             return Ok(Bound::new(py, found)?.into_any());
         }
         let found = enter::long(py, |control| {
@@ -192,9 +207,10 @@ impl PyAtom {
         })?;
         warn_light(py, self)?;
         let rows = found.iter().map(|one| one.value).collect();
-        let value = PyPolarisability { inner: Table { shape: shape.clone(), rows } };
+        let value =
+            PyPolarisability { inner: Table { atom: atom.clone(), shape: shape.clone(), rows } };
         let rows = found.iter().map(|one| one.standard_error).collect();
-        let error = PyPolarisability { inner: Table { shape, rows } };
+        let error = PyPolarisability { inner: Table { atom: atom.clone(), shape, rows } };
         uncertain(
             py,
             Bound::new(py, value)?.into_any(),
@@ -209,7 +225,7 @@ impl PyAtom {
         let f = number(f, "f")?;
         let found = enter::short(py, || self.inner.static_polarisability_au(f))?;
         warn_light(py, self)?;
-        Ok(PyPolarisability::one(found))
+        Ok(PyPolarisability::one(&self.inner, found))
     }
 
     /// The one wavelength within a range at which a polarisability vanishes.

@@ -13,6 +13,7 @@ use crate::atom::PyAtom;
 use crate::beam::PyBeam;
 use crate::convert::{items, number, vector};
 use crate::errors::{raise_core, wrong_type};
+use crate::raman::PyRamanPair;
 
 static STATE: PyOnceLock<Py<PyAny>> = PyOnceLock::new();
 static UNCERTAIN: PyOnceLock<Py<PyAny>> = PyOnceLock::new();
@@ -68,12 +69,16 @@ pub fn bias(
     Ok(bias)
 }
 
-/// One beam or several.
+/// One beam, those of a pair, or several.
 pub fn beams(value: &Bound<'_, PyAny>) -> PyResult<Vec<Beam>> {
     if let Ok(one) = value.cast::<PyBeam>() {
         return Ok(vec![one.get().inner]);
     }
-    let wanted = "a Beam or a list of them";
+    if let Ok(pair) = value.cast::<PyRamanPair>() {
+        let beams = pair.get().inner.beams().map_err(|error| raise_core(value.py(), error))?;
+        return Ok(beams.to_vec());
+    }
+    let wanted = "a Beam, a RamanPair with beams, or a list of Beam";
     let mut beams = Vec::new();
     for item in items(value, "beams", wanted)? {
         let beam =

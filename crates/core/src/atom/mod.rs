@@ -8,6 +8,7 @@
 //!
 //! Single-photon recoil: `E_R/h = h/(2 m lambda^2)`, `v = h/(m lambda)`.
 
+mod breit_rabi;
 mod dipoles;
 mod insensitive;
 mod levels;

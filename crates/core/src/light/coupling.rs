@@ -25,6 +25,8 @@ pub const FORBIDDEN: f64 = 1e-2;
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Coupling {
+    /// The atom, whose numbers stand behind the result.
+    pub atom: Atom,
     /// The state a.
     pub from: State,
     /// The state b.
@@ -74,6 +76,7 @@ impl RamanPair {
         let largest = self.largest_hz(atom, bias)?;
         let relative = if largest > 0.0 { rabi_hz.norm() / largest } else { 0.0 };
         let mut coupling = Coupling {
+            atom: atom.clone(),
             from: a,
             to: b,
             rabi_hz,

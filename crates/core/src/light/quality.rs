@@ -22,6 +22,8 @@ use crate::limits::{POINTS, WAVELENGTH_NM};
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Quality {
+    /// The atom, whose numbers stand behind the result.
+    pub atom: Atom,
     /// Vacuum wavelengths of the absorbed beam, ascending; those too near to a
     /// line are left out.
     pub wavelengths_nm: Vec<f64>,
@@ -78,6 +80,7 @@ impl RamanPair {
         }
         let excluded_nm = excluded(atom, range_nm);
         let mut quality = Quality {
+            atom: atom.clone(),
             wavelengths_nm: Vec::new(),
             rabi_hz: Vec::new(),
             scattering_per_s: Vec::new(),

@@ -33,6 +33,8 @@ use crate::error::Error;
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct Scattering {
+    /// The atom, whose numbers stand behind the result.
+    pub atom: Atom,
     /// The state the atoms are in.
     pub from: State,
     /// Photons per second.
@@ -68,7 +70,7 @@ impl Scattering {
         let from = states.get(place).copied().unwrap_or(State::known(0, 0));
         let raman = to.iter().enumerate().filter(|(f, _)| *f != place).map(|(_, rate)| rate).sum();
         let to = states.iter().copied().zip(to).collect();
-        Self { from, total, rayleigh, raman, to, heating_hz_per_s }
+        Self { atom: atom.clone(), from, total, rayleigh, raman, to, heating_hz_per_s }
     }
 }
 

@@ -19,6 +19,8 @@ use crate::error::Error;
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[serde(deny_unknown_fields)]
 pub struct StrayCoupling {
+    /// The atom, whose numbers stand behind the result.
+    pub atom: Atom,
     /// Where the photon is absorbed from: `absorb`, `emit`, or one of them reflected.
     pub absorb: String,
     /// Where it is emitted into.
@@ -71,6 +73,7 @@ impl RamanPair {
             let pair = Self::from_beams(one.1, two.1)?;
             let rabi_hz = pair.rabi_hz(atom, states, bias)?;
             found.push(StrayCoupling {
+                atom: atom.clone(),
                 absorb: one.0.to_owned(),
                 emit: two.0.to_owned(),
                 rabi_hz,
