@@ -2,6 +2,7 @@
 
 use fluxloom_core::control::{allow_numbers, go_on};
 use fluxloom_core::light::{Polarisability, TuneOut};
+use fluxloom_core::limits;
 use fluxloom_core::{Atom, Document};
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
@@ -181,7 +182,9 @@ impl PyAtom {
         uncertainty: bool,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = f.py();
-        let Numbers { shape, values } = numbers(wavelength_nm, "wavelength_nm")?;
+        let found = numbers(wavelength_nm, "wavelength_nm")?;
+        found.check(py, &limits::WAVELENGTH_NM, "wavelength_nm")?;
+        let Numbers { shape, values } = found;
         let f = number(f, "f")?;
         let atom = &self.inner;
         if !uncertainty {

@@ -4,8 +4,8 @@
 //! is fine against every field on which the hyperfine structure changes, also
 //! where two zeros lie between two points.
 
-use super::Atom;
 use super::state::State;
+use super::{Atom, Levels};
 use crate::error::Error;
 use crate::limits::FIELD_GAUSS;
 
@@ -43,13 +43,16 @@ impl Atom {
                 message: format!("both states are {a}: a splitting takes two different states"),
             });
         }
-        let slope = |field: f64| -> Result<f64, Error> {
-            let levels = self.ground_levels(field.clamp(low, high))?;
-            Ok(levels.moment_hz_per_gauss(b)? - levels.moment_hz_per_gauss(a)?)
+        let manifold = self.manifold();
+        let (from, to) = (manifold.find(self.name(), a)?, manifold.find(self.name(), b)?);
+        let structure = self.structure();
+        let slope = |field: f64| {
+            let of = |place| Levels::moment_hz_per_gauss(&structure, place, field.clamp(low, high));
+            of(to) - of(from)
         };
         let step = (high - low) / f64::from(INTERVALS);
         let grid: Vec<f64> = (0..=INTERVALS).map(|k| low + f64::from(k) * step).collect();
-        let slopes: Vec<f64> = grid.iter().map(|field| slope(*field)).collect::<Result<_, _>>()?;
+        let slopes: Vec<f64> = grid.iter().map(|field| slope(*field)).collect();
         // Equal slopes everywhere: two states of one nuclear moment. Nothing to find.
         if slopes.iter().all(|s| s.abs() <= FLAT_HZ_PER_GAUSS) {
             return Ok(Vec::new());
@@ -68,7 +71,7 @@ impl Atom {
             } else if second.abs() <= FLAT_HZ_PER_GAUSS {
                 keep(right);
             } else if first.signum() != second.signum() {
-                keep(bisect((left, first), right, slope)?);
+                keep(bisect((left, first), right, slope));
             }
         }
         for (fields, values) in grid.windows(3).zip(slopes.windows(3)) {
@@ -78,10 +81,10 @@ impl Atom {
                 continue;
             }
             // A dip towards zero between grid points may hide two zeros.
-            let bottom = lowest(left, right, |field| Ok(slope(field)? * first.signum()))?;
-            if slope(bottom)?.signum() != first.signum() {
-                keep(bisect((left, first), bottom, slope)?);
-                keep(bisect((right, last), bottom, slope)?);
+            let bottom = lowest(left, right, |field| slope(field) * first.signum());
+            if slope(bottom).signum() != first.signum() {
+                keep(bisect((left, first), bottom, slope));
+                keep(bisect((right, last), bottom, slope));
             }
         }
         found.sort_by(f64::total_cmp);
@@ -90,30 +93,26 @@ impl Atom {
 }
 
 /// The zero between a point with its value and another of the opposite sign.
-fn bisect(from: (f64, f64), to: f64, f: impl Fn(f64) -> Result<f64, Error>) -> Result<f64, Error> {
+fn bisect(from: (f64, f64), to: f64, f: impl Fn(f64) -> f64) -> f64 {
     let ((mut same, sign), mut other) = ((from.0, from.1.signum()), to);
     while (other - same).abs() > WIDTH * (1.0 + same.abs()) {
         let middle = 0.5 * (same + other);
         if middle == same || middle == other {
             break;
         }
-        if f(middle)?.signum() == sign { same = middle } else { other = middle }
+        if f(middle).signum() == sign { same = middle } else { other = middle }
     }
-    Ok(0.5 * (same + other))
+    0.5 * (same + other)
 }
 
 /// Where a function with one dip is lowest (golden section).
-fn lowest(
-    mut left: f64,
-    mut right: f64,
-    f: impl Fn(f64) -> Result<f64, Error>,
-) -> Result<f64, Error> {
+fn lowest(mut left: f64, mut right: f64, f: impl Fn(f64) -> f64) -> f64 {
     let golden = 0.5 * (5.0_f64.sqrt() - 1.0);
     for _ in 0..60 {
         let (one, two) = (right - golden * (right - left), left + golden * (right - left));
-        if f(one)? < f(two)? { right = two } else { left = one }
+        if f(one) < f(two) { right = two } else { left = one }
     }
-    Ok(0.5 * (left + right))
+    0.5 * (left + right)
 }
 
 #[cfg(test)]

@@ -57,6 +57,11 @@ impl Levels {
         Self { levels }
     }
 
+    /// Slope of the energy of one state at a checked field, Hz/G.
+    pub fn moment_hz_per_gauss(structure: &Structure, place: usize, field_gauss: f64) -> f64 {
+        level(structure, structure.manifold(), place, field_gauss).moment_hz_per_gauss
+    }
+
     /// Places and amplitudes of the zero-field states in the state at a place.
     pub fn parts(&self, place: usize) -> impl Iterator<Item = (usize, f64)> + Clone {
         let parts = self.levels.get(place).map_or([(place, 1.0), (place, 0.0)], |one| one.parts);
