@@ -13,6 +13,7 @@ mod beam;
 mod check;
 mod convert;
 mod coupling;
+mod coupling_results;
 mod documents;
 mod enter;
 mod errors;
@@ -20,6 +21,7 @@ mod functions;
 mod lattice;
 mod levels;
 mod light;
+mod links;
 mod polarisability;
 mod raman;
 mod state;
@@ -88,7 +90,7 @@ mod _core {
     #[pymodule_export]
     use super::check::{PyFluxCheck, PyNearFraction, check_flux};
     #[pymodule_export]
-    use super::coupling::{PyCoupling, PyQuality, PyRanks, PyStrayCoupling};
+    use super::coupling_results::{PyCoupling, PyQuality, PyRanks, PyStrayCoupling};
     #[pymodule_export]
     use super::functions::{
         band_energies_er, flux_of_arrays, fold, raman_angles, raman_wavelengths,
@@ -101,6 +103,8 @@ mod _core {
     use super::light::{
         PyScattering, lattice_depth_er, lattice_power_mw, lattice_scattering_per_s,
     };
+    #[pymodule_export]
+    use super::links::{PyLegReport, PyLightReport, PyLinkReport};
     #[pymodule_export]
     use super::polarisability::PyPolarisability;
     #[pymodule_export]
