@@ -1,8 +1,8 @@
 //! Physics and numbers for synthetic magnetic flux in Raman-coupled optical
 //! lattices: no files, no hardware, no Python.
 //!
-//! Each room uses only rooms that stand before it: [`constants`], [`rational`],
-//! [`atom`], [`light`], [`lattice`], [`flux`].
+//! Each room uses only rooms that stand before it: [`constants`], [`angular`],
+//! [`rational`], [`atom`], [`light`], [`lattice`], [`flux`].
 
 pub mod angular;
 pub mod atom;

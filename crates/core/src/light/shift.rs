@@ -1,7 +1,7 @@
 //! Light shifts of the ground states.
 //!
 //! To first order in the light, on the eigenstates of the bias field:
-//! V/h = -(1/4)|E|^2 <v>/h for each beam, v from [`super::response`]; beams of
+//! V/h = -(1/4)|E|^2 `<v>`/h for each beam, v from [`super::response`]; beams of
 //! different frequencies do not interfere and add up. The field has to win over
 //! the part of the light that would turn the states. Negative is down.
 
