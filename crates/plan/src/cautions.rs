@@ -42,13 +42,15 @@ const VISIBLE_NM: (f64, f64) = (400.0, 700.0);
 const STRONG_FIELD_GAUSS: f64 = 10.0;
 
 impl Apparatus {
-    /// Settings that stand outside their own ranges, and hazards of the settings
-    /// of today and of the powers the beams can be driven to.
+    /// Settings that stand outside their own ranges or do not quite agree, and
+    /// hazards of the settings of today and of the powers the beams can be
+    /// driven to.
     ///
     /// # Errors
     /// None for an apparatus that was read.
     pub fn cautions(&self) -> Result<Vec<Caution>, Error> {
         let mut cautions = self.outside_ranges()?;
+        cautions.extend(self.depth_disagrees());
         cautions.extend(self.strong_beams()?);
         cautions.extend(self.strong_field());
         Ok(cautions)
@@ -81,6 +83,11 @@ impl Apparatus {
             }
         }
         Ok(cautions)
+    }
+
+    fn depth_disagrees(&self) -> Option<Caution> {
+        let text = self.agreement()?.caution()?;
+        Some(Caution { code: Cow::Borrowed("caution.depth_disagrees"), text })
     }
 
     fn strong_beams(&self) -> Result<Option<Caution>, Error> {

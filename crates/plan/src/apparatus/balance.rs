@@ -6,10 +6,9 @@ use std::collections::BTreeSet;
 
 use fluxloom_core::limits::{DEPTH_ER, plain};
 
+use super::agreement::DEPTH;
 use super::check;
 use crate::files::{Data, Node, path};
-
-const DEPTH: &str = "lattice.depth_er";
 
 /// What a change does beyond what it names.
 #[derive(Default)]
@@ -40,8 +39,8 @@ pub(super) struct Move {
 /// A ratio kept as its two numbers, so that 54.6 x 9 / 6 is 81.9 and nothing beside it.
 #[derive(Clone, Copy)]
 pub(super) struct Factor {
-    top: f64,
-    bottom: f64,
+    pub top: f64,
+    pub bottom: f64,
 }
 
 impl Factor {
@@ -194,6 +193,6 @@ pub(super) fn scaled(root: &Node, step: &Move) -> Option<Node> {
 }
 
 /// A number for a sentence: six digits are enough.
-fn short(value: f64) -> String {
+pub(super) fn short(value: f64) -> String {
     plain(format!("{value:.5e}").parse().unwrap_or(value))
 }

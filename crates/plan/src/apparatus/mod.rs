@@ -14,13 +14,16 @@
 //! # Ok::<(), fluxloom_plan::Error>(())
 //! ```
 
+mod agreement;
 mod balance;
+mod beams;
 mod check;
 mod edit;
 pub mod keys;
 mod physics;
 mod place;
 mod replace;
+mod retune;
 mod settings;
 mod state;
 
@@ -30,7 +33,7 @@ use std::path::Path;
 use serde_json::Value;
 
 pub use settings::{Measured, Origin};
-pub use state::{Halves, read_pair, read_state};
+pub use state::read_pair;
 
 use crate::Error;
 use crate::files::{self, Faults, Lines, Node};
@@ -110,7 +113,7 @@ impl Apparatus {
         let tree = files::read_toml(text, &mut faults);
         let tree = tree.inspect(|tree| check::check(tree, &mut faults));
         let tree = tree.unwrap_or_else(|| Node::new(files::Data::Unreadable));
-        faults.finish(Self { text: text.to_owned(), tree, changes: Vec::new() })
+        Self { text: text.to_owned(), tree, changes: Vec::new() }.agreed(faults)
     }
 
     fn read_json(text: &str, file: Option<&str>) -> Result<Self, Error> {
@@ -133,9 +136,15 @@ impl Apparatus {
             faults.add("file.wrong_type", None, "", message);
         }
         let mut apparatus =
-            faults.finish(Self { text: String::new(), tree, changes: Vec::new() })?;
+            Self { text: String::new(), tree, changes: Vec::new() }.agreed(faults)?;
         apparatus.text = edit::document(&apparatus.tree).to_string();
         Ok(apparatus)
+    }
+
+    /// This apparatus, if nothing is wrong with it and what it says twice agrees.
+    fn agreed(self, mut faults: Faults) -> Result<Self, Error> {
+        agreement::check(&self, &mut faults);
+        faults.finish(self)
     }
 
     /// The settings as nested tables, as written; dates are texts. Format and

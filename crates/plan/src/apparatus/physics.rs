@@ -1,7 +1,5 @@
 //! The settings of today as physics: atom, lattice, Raman beams, and the verdict on a flux.
 
-use fluxloom_core::degrees::{cos_deg, sin_deg};
-use fluxloom_core::vector::{cross, unit};
 use fluxloom_core::{Atom, Crossing, Directions, Flux, Lattice, LatticeInput, RamanPair, limits};
 
 use crate::apparatus::{Apparatus, Origin};
@@ -22,7 +20,7 @@ impl Apparatus {
     }
 
     /// Vacuum wavelength of the laser that feeds a beam.
-    fn wavelength_of_beam_nm(&self, beam: &str) -> Result<f64, Error> {
+    pub(super) fn wavelength_of_beam_nm(&self, beam: &str) -> Result<f64, Error> {
         let laser = self.text(&format!("beams.{beam}.laser"))?;
         self.number(&format!("lasers.{laser}.wavelength_nm"))
     }
@@ -45,6 +43,7 @@ impl Apparatus {
 
     /// The Raman beams as they stand today: by their crossing angle if both
     /// have one wavelength, by their directions in the plane of the pair otherwise.
+    /// Where both state power, waist and polarisation the pair carries their light.
     ///
     /// # Errors
     /// [`fluxloom_core::Error::Contradiction`] (`apparatus.no_raman_beams`) if
@@ -58,42 +57,35 @@ impl Apparatus {
             ));
         }
         let beams = self.list("raman.beams")?;
-        let wavelengths: Vec<f64> =
-            beams.iter().map(|beam| self.wavelength_of_beam_nm(beam)).collect::<Result<_, _>>()?;
-        let angle_deg = self.number("raman.angle_deg")?;
-        let tilt_deg = self.number("raman.tilt_deg")?;
-        let (absorb_nm, emit_nm) = match wavelengths.as_slice() {
-            [absorb_nm, emit_nm] => (*absorb_nm, *emit_nm),
-            other => (other.first().copied().unwrap_or(f64::NAN), f64::NAN),
+        let seats = self.seats("raman")?;
+        let ([absorb, emit], [first, second]) = (beams.as_slice(), seats.as_slice()) else {
+            // The reader saw to it that there are two.
+            return Err(refused("apparatus.no_raman_beams", "raman.beams takes two".to_owned()));
+        };
+        let absorb_nm = self.wavelength_of_beam_nm(absorb)?;
+        let emit_nm = self.wavelength_of_beam_nm(emit)?;
+        let lit = if self.has_light("raman") {
+            Some((self.lit(absorb, *first)?, self.lit(emit, *second)?))
+        } else {
+            None
         };
         if absorb_nm == emit_nm {
+            let angle_deg = self.number("raman.angle_deg")?;
+            let tilt_deg = self.number("raman.tilt_deg")?;
             let crossing = Crossing { wavelength_nm: absorb_nm, angle_deg, tilt_deg };
-            return Ok(RamanPair::crossing(crossing)?);
-        }
-        let along = unit(self.vector("lattice.axis")?, "lattice.axis")?;
-        let normal = unit(self.vector("raman.plane_normal")?, "raman.plane_normal")?;
-        let across = cross(normal, along);
-        let mix = |a: f64, b: f64| {
-            let [x, y, z] = [0, 1, 2].map(|k: usize| {
-                let part = |v: [f64; 3]| v.get(k).copied().unwrap_or_default();
-                a * part(along) + b * part(across)
+            let pair = RamanPair::crossing(crossing)?;
+            return Ok(match lit {
+                Some((absorb, emit)) => pair.with_beams(absorb, emit)?,
+                None => pair,
             });
-            [x, y, z]
-        };
-        // The difference of the directions lies at the tilt from the lattice, their
-        // sum at right angles to it.
-        let (sine, cosine) = (sin_deg(0.5 * angle_deg), cos_deg(0.5 * angle_deg));
-        let (turn_sine, turn_cosine) = (sin_deg(tilt_deg), cos_deg(tilt_deg));
-        let direction = |sign: f64| {
-            mix(
-                sign * sine * turn_cosine - cosine * turn_sine,
-                sign * sine * turn_sine + cosine * turn_cosine,
-            )
-        };
+        }
+        if let Some((absorb, emit)) = lit {
+            return Ok(RamanPair::from_beams(absorb, emit)?);
+        }
         Ok(RamanPair::from_directions(Directions {
-            absorb: direction(1.0),
+            absorb: first.direction,
             absorb_wavelength_nm: absorb_nm,
-            emit: Some(direction(-1.0)),
+            emit: Some(second.direction),
             emit_wavelength_nm: Some(emit_nm),
         })?)
     }

@@ -101,19 +101,26 @@ impl Apparatus {
         let node = self.tree.find(&keys);
         Ok(match (found, node) {
             (Found::Setting(key), Some(node)) => Place::Stated(key, node),
-            (Found::Setting(key), None) => self.default(key),
+            (Found::Setting(key), None) => self.default(key, &keys),
             (Found::Part(key, "value"), None) => {
                 let setting = keys.split_last().map(|(_, setting)| setting).unwrap_or_default();
                 let node = self.tree.find(setting);
-                node.map_or_else(|| self.default(key), |node| Place::Stated(key, node))
+                node.map_or_else(|| self.default(key, setting), |node| Place::Stated(key, node))
             }
             (_, Some(node)) => Place::Inner(node),
             (_, None) => Place::NotStated,
         })
     }
 
-    fn default(&self, key: &'static Key) -> Place<'_> {
+    fn default(&self, key: &'static Key, keys: &[String]) -> Place<'_> {
         let Need::Default(standard, reason) = key.need else { return Place::NotStated };
+        // A beam that is not sent back returns no fraction of its power.
+        if key.name() == "return_fraction"
+            && let [_, beam, ..] = keys
+            && self.pair("lattice").as_slice() != [beam.as_str()]
+        {
+            return Place::NotStated;
+        }
         // Without a Raman pair, say, there is no tilt of it either.
         let table = key.table();
         let absent = !table.contains('*') && !table.is_empty() && self.tree.get(table).is_none();

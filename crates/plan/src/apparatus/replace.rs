@@ -5,9 +5,10 @@ use fluxloom_core::limits::plain;
 use serde_json::Value;
 use toml_edit::{DocumentMut, Item};
 
+use super::balance::Move;
 use super::keys::{self, Found};
 use super::place::UNKNOWN_PATH;
-use super::{Apparatus, balance, check, edit};
+use super::{Apparatus, agreement, balance, check, edit, retune};
 use crate::Error;
 use crate::files::{self, Data, Faults, Lines, Node, path};
 
@@ -23,7 +24,8 @@ impl Apparatus {
     /// stated so far or not; a table's path takes the whole table, which is how
     /// a new beam or laser is added. A plain number in place of a measured one
     /// drops the old uncertainty with the old value. Depth and power of the
-    /// lattice move together; [`Apparatus::changes`] says what moved.
+    /// lattice move together, and the power follows what else changes the depth
+    /// it makes; [`Apparatus::changes`] says what moved.
     ///
     /// # Errors
     /// [`Error::Faults`] with everything that is wrong with the changes and
@@ -52,29 +54,38 @@ impl Apparatus {
         for change in &changes {
             put(&mut document, &self.tree, change);
         }
-        let mut text = edit::like(&self.text, &document.to_string());
-        let mut reading = Faults::new(None, Lines::Hidden);
-        let mut tree = read(&text, &mut reading);
-        let balance = balance::balance(&self.tree, &tree, &touched(&changes));
-        for step in &balance.moves {
-            if let Some(node) = balance::scaled(&tree, step) {
-                let keys = path::split(&step.path);
-                let item = edit::item(&node, "", &step.path);
-                edit::put(&mut document, &keys, item);
-            }
+        let touched = touched(&changes);
+        let mut new = self.reread(&document);
+        let mut balance = balance::balance(&self.tree, &new.tree, &touched);
+        if move_along(&mut document, &new.tree, &balance.moves) {
+            new = self.reread(&document);
         }
-        if !balance.moves.is_empty() {
-            text = edit::like(&self.text, &document.to_string());
-            tree = read(&text, &mut reading);
+        let retuned = retune::retune(self, &new, &touched);
+        if retuned.is_known {
+            balance.remark = None;
         }
-        check::check(&tree, &mut faults);
+        if move_along(&mut document, &new.tree, &retuned.moves) {
+            new = self.reread(&document);
+        }
+        balance.moves.extend(retuned.moves);
+        check::check(&new.tree, &mut faults);
+        agreement::check(&new, &mut faults);
         // The user set one number and the fault is at the other: name both.
         for fault in faults.iter_mut() {
             if let Some(step) = balance.moves.iter().find(|step| step.path == fault.path) {
                 fault.message = format!("{}; {}", step.sentence, fault.message);
             }
         }
-        faults.finish(Self { text, tree, changes: balance.sentences() })
+        faults.finish(Self { changes: balance.sentences(), ..new })
+    }
+
+    /// A changed document with the line ends of this one, not judged yet.
+    fn reread(&self, document: &DocumentMut) -> Self {
+        let text = edit::like(&self.text, &document.to_string());
+        let mut reading = Faults::new(None, Lines::Hidden);
+        let tree =
+            files::read_toml(&text, &mut reading).unwrap_or_else(|| Node::new(Data::Unreadable));
+        Self { text, tree, changes: Vec::new() }
     }
 
     /// Finds out where the changes lead, and reports those that lead nowhere.
@@ -232,6 +243,13 @@ fn touched(changes: &[Change]) -> Vec<Vec<String>> {
     changes.iter().filter(is_value).map(|change| change.keys.clone()).collect()
 }
 
-fn read(text: &str, faults: &mut Faults) -> Node {
-    files::read_toml(text, faults).unwrap_or_else(|| Node::new(Data::Unreadable))
+/// Writes numbers that move along; whether there were any.
+fn move_along(document: &mut DocumentMut, tree: &Node, moves: &[Move]) -> bool {
+    for step in moves {
+        if let Some(node) = balance::scaled(tree, step) {
+            let keys = path::split(&step.path);
+            edit::put(document, &keys, edit::item(&node, "", &step.path));
+        }
+    }
+    !moves.is_empty()
 }

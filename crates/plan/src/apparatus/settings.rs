@@ -1,12 +1,13 @@
 //! Settings by their paths, in the kind that is asked for.
 
 use fluxloom_core::Document;
+use fluxloom_core::atom::State;
 use serde::{Deserialize, Serialize};
 use serde_json::Value;
 
+use super::Apparatus;
 use super::keys::{self, Found, Spread, Standard};
 use super::place::{Place, fault, inner, standard_value, value};
-use super::{Apparatus, Halves, read_state};
 use crate::Error;
 use crate::files::{Data, Node, path};
 
@@ -82,13 +83,12 @@ impl Apparatus {
         }
     }
 
-    /// F and m of a state.
+    /// A hyperfine state.
     ///
     /// # Errors
     /// As [`Apparatus::get`], and `apparatus.wrong_kind` if it is no state.
-    pub fn state(&self, path: &str) -> Result<(f64, f64), Error> {
-        let state = read_state(&self.text(path)?);
-        state.map(Halves::numbers).map_err(|_| wrong_kind(path, "a state"))
+    pub fn state(&self, path: &str) -> Result<State, Error> {
+        State::read(&self.text(path)?).map_err(|_| wrong_kind(path, "a state"))
     }
 
     /// true or false.

@@ -140,9 +140,9 @@ fn power_follows_depth() {
     // The next change starts afresh.
     assert!(change(&ap, &[("trap.along_hz", json!(1))]).unwrap().changes().is_empty());
     // Both given, or the same depth again: nothing moves.
-    let both = [("lattice.depth_er", json!(9)), ("beams.lattice.power_mw", json!(60))];
+    let both = [("lattice.depth_er", json!(9)), ("beams.lattice.power_mw", json!(80))];
     let ap = change(&bay(), &both).unwrap();
-    assert_eq!(ap.number("beams.lattice.power_mw").unwrap(), 60.0);
+    assert_eq!(ap.number("beams.lattice.power_mw").unwrap(), 80.0);
     assert!(ap.changes().is_empty());
     let ap = change(&bay(), &[("lattice.depth_er", json!(6))]).unwrap();
     assert_eq!(ap.number("beams.lattice.power_mw").unwrap(), 54.6);
@@ -248,8 +248,11 @@ fn a_whole_table_keeps_what_stays_the_same() {
     lattice["wavelength_nm"] = json!(1053.0);
     lattice.as_object_mut().unwrap().shift_remove("drift_rms_hz");
     let ap = change(&bay(), &[("lasers.lattice", lattice)]).unwrap();
+    // The power follows the wavelength, and nothing else does.
+    let power_mw = ap.number("beams.lattice.power_mw").unwrap();
     let expected = bay_with("wavelength_nm = 1064.0", "wavelength_nm = 1053.0")
-        .replace("drift_rms_hz = 2.0e6\n", "");
+        .replace("drift_rms_hz = 2.0e6\n", "")
+        .replace("power_mw = 54.6", &format!("power_mw = {power_mw:?}"));
     assert_eq!(ap.to_toml(), expected);
     // So does a last line without an end.
     let open = Apparatus::from_toml(SMALL.trim_end()).unwrap();

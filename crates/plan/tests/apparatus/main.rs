@@ -5,6 +5,8 @@
 mod changes;
 mod faults;
 mod files;
+mod light;
+mod links;
 mod random;
 mod settings;
 

@@ -2,10 +2,11 @@
 
 use std::collections::BTreeSet;
 
+use fluxloom_core::atom::{State, halves_text};
 use fluxloom_core::limits::Limit;
 use fluxloom_core::{Atom, Error};
 
-use super::super::state::{Halves, read_pair, read_state};
+use super::super::state::read_pair;
 use super::value::{Asked, number, shown, text, wrong_type};
 use crate::files::{Data, Faults, Node, path};
 
@@ -38,7 +39,7 @@ pub(super) fn state(node: &Node, at: &str, atom: Option<&Atom>, faults: &mut Fau
     let Some(found) = text(node, at, "a state, such as \"9/2,-9/2\",", faults) else {
         return;
     };
-    let why = match read_state(found) {
+    let why = match State::read(found) {
         Ok(state) => foreign(state, atom),
         Err(why) => Some(format!("{why}: write F,m such as \"9/2,-9/2\"")),
     };
@@ -60,7 +61,7 @@ pub(super) fn pairs(
         let asked = "a table from pairs of states to numbers, { \"F,m F,m\" = 100.0 },";
         return wrong_type(node, at, Asked::Other(asked), faults);
     }
-    let mut seen: BTreeSet<[Halves; 2]> = BTreeSet::new();
+    let mut seen: BTreeSet<[State; 2]> = BTreeSet::new();
     for entry in node.entries() {
         let here = path::join(at, &entry.key);
         let line = entry.node.line;
@@ -94,18 +95,12 @@ pub(super) fn pairs(
 }
 
 /// Why the atom has no such state, if so.
-fn foreign(state: Halves, atom: Option<&Atom>) -> Option<String> {
+fn foreign(state: State, atom: Option<&Atom>) -> Option<String> {
     let atom = atom?;
-    let manifolds = atom.manifolds();
-    let f = state.numbers().0;
-    // Both are exact multiples of one half.
-    if manifolds.contains(&f) {
+    let manifold = atom.manifold();
+    if manifold.index_of(state).is_some() {
         return None;
     }
-    let list: Vec<String> = manifolds.iter().map(|f| halves_text(*f)).collect();
+    let list: Vec<String> = manifold.twice_f.iter().map(|f| halves_text(*f)).collect();
     Some(format!("is not a state of {}, which has F = {}", atom.name(), list.join(" and ")))
-}
-
-fn halves_text(number: f64) -> String {
-    if number.fract() == 0.0 { format!("{number}") } else { format!("{}/2", number * 2.0) }
 }

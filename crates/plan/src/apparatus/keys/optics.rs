@@ -47,7 +47,8 @@ pub(super) const KEYS: &[Key] = &[
         "beams.*.waist_um",
         OneOrTwo(WAIST_UM),
         Optional,
-        "the 1/e^2 radius, or [w1, w2] of an ellipse",
+        "the 1/e^2 radius, or [w1, w2] of an ellipse, w1 in the plane of the pair and w2 along \
+         plane_normal",
     ),
     Key::new(
         "beams.*.polarisation_deg",
@@ -70,7 +71,7 @@ pub(super) const KEYS: &[Key] = &[
     Key::new(
         "beams.*.return_fraction",
         Number(r::FRACTION),
-        Optional,
+        Default(N(1.0), "retro-reflected without loss unless said"),
         "power of the retro-reflected beam over the incoming one",
     ),
     Key::new(
