@@ -69,6 +69,13 @@ def test_single_values_and_nothing_else() -> None:
     assert (done.returncode, done.stdout) == (2, "")
     done = run("check", BAY, "--target", "3/8", "--value", "closure_mismatch")
     assert done.returncode == 2
+    done = run("check", BAY, "--target", "3/8", "--value", "light.links.1.to")
+    assert done.stdout == "9/2,-5/2\n"
+    done = run("check", BAY, "--target", "3/8", "--value", "light.depth_from_power_er")
+    assert float(done.stdout) == pytest.approx(6.0, abs=0.06)
+    done = run("check", BAY, "--target", "3/8", "--value", "light.links.9.to")
+    assert (done.returncode, done.stdout) == (2, "")
+    assert "light.links.0.to" in done.stderr and "light.links.1.to" not in done.stderr
     done = run("check", BAY, "--target", "3/8", "--quiet")
     assert done.stdout.count("\n") == 1
 

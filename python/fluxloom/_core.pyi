@@ -41,6 +41,9 @@ __all__ = [
     "FluxCheck",
     "GroundLevels",
     "Lattice",
+    "LegReport",
+    "LightReport",
+    "LinkReport",
     "Measured",
     "NearFraction",
     "Polarisability",
@@ -662,6 +665,13 @@ class Apparatus(_Document["Apparatus"]):
     def atom(self) -> Atom: ...
     def lattice(self) -> Lattice: ...
     def raman_pair(self) -> RamanPair: ...
+    def beam(self, name: str) -> Beam:
+        """Return a beam of the file as light, focused on the atoms."""
+
+    def lattice_beams(self) -> tuple[Beam, Beam]: ...
+    def links(self, *, legs: _Option = None, closed: bool | None = False) -> LightReport | None:
+        """Return depth from power, couplings and scattering; None without light."""
+
     field_direction: Final[_Triple]
     cautions: Final[tuple[Caution, ...]]
     def defaults(self) -> dict[str, tuple[_Setting, str]]:
@@ -676,6 +686,47 @@ class Apparatus(_Document["Apparatus"]):
         closed: bool | None = False,
         phase_budget_rad: _Option = 0.5,
     ) -> FluxCheck: ...
+
+@final
+class LightReport(_Document["LightReport"]):
+    """What the light of an apparatus does to its atoms."""
+
+    depth_from_power_er: Final[float | None]
+    depth_er: Final[float]
+    depth_standard_error_er: Final[float | None]
+    field_gauss: Final[float | None]
+    field_rms_gauss: Final[float]
+    links: Final[tuple[LinkReport, ...]]
+    scattering_per_s: Final[tuple[LegReport, ...]]
+    remarks: Final[tuple[str, ...]]
+    unconfirmed_data: Final[tuple[str, ...]]
+    cautions: Final[tuple[Caution, ...]]
+    def table(self) -> str: ...
+
+@final
+class LinkReport(_Document["LinkReport"]):
+    """A link between two legs."""
+
+    a: Final[State]
+    b: Final[State]
+    splitting_hz: Final[float]
+    rabi_hz: Final[float | None]
+    effective_rabi_hz: Final[float | None]
+    forbidden: Final[bool]
+    rule: Final[str | None]
+    alternatives: Final[tuple[str, ...]]
+    field_hz_per_gauss: Final[float]
+    field_rms_hz: Final[float]
+
+@final
+class LegReport(_Document["LegReport"]):
+    """Light that a leg scatters."""
+
+    state: Final[State]
+    raman_beams_per_s: Final[float | None]
+    raman_beams_changing_per_s: Final[float | None]
+    lattice_beams_per_s: Final[float | None]
+    lattice_beams_changing_per_s: Final[float | None]
 
 @final
 class Caution(_Document["Caution"]):

@@ -5,8 +5,9 @@ With ``--json`` stdout holds exactly one document, whatever the exit code.
 
 import contextlib
 import json
+import re
 import sys
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
@@ -40,7 +41,7 @@ class Answer:
 def show(answer: Answer, command: str, form: Form) -> None:
     """Print an answer on stdout, if there is one, in the form that was asked for."""
     if form.value is not None:
-        text = single(answer.document[command], form.value)
+        text = single(answer.document, command, form.value)
     elif form.json:
         text = dump({"command": command, "ok": True, **answer.document, "faults": []})
     elif form.quiet:
@@ -51,19 +52,42 @@ def show(answer: Answer, command: str, form: Form) -> None:
         print(text, flush=True)
 
 
-def single(found: Plain, key: str) -> str:
-    """Return one number or text of a check as it is to be printed."""
-    table = found if isinstance(found, dict) else {}
-    known = [name for name, value in table.items() if not isinstance(value, (dict, list))]
+def single(document: dict[str, Plain], command: str, key: str) -> str:
+    """Return one number or text of an answer as it is to be printed.
+
+    What the command found has plain names; what stands in further tables is
+    reached with points and places: ``light.links.0.rabi_hz``.
+    """
+    found = document[command]
+    further = {name: value for name, value in document.items() if isinstance(value, dict)}
+    further.pop(command, None)
+    known = dict(leaves(found, deep=False)) | dict(leaves(further))
     if key not in known:
+        # Of a list the first entry shows what all have.
+        shown = [name for name in known if not re.search(r"\.[1-9]\d*\b", name)]
         raise fl.InputError(
-            f"--value {key} is not a number or text of this answer; there are " + ", ".join(known),
+            f"--value {key} is not a number or text of this answer; there are " + ", ".join(shown),
             "command.unknown_value",
         )
-    value = table[key]
+    value = known[key]
     if value is None:
         raise fl.InputError(f"--value {key}: this answer has none", "command.no_value")
     return value if isinstance(value, str) else json.dumps(value)
+
+
+def leaves(node: Plain, place: str = "", *, deep: bool = True) -> Iterator[tuple[str, Plain]]:
+    """Yield every number and text below a table, or directly in it, with its place."""
+    inner: Iterable[tuple[object, Plain]]
+    if isinstance(node, dict):
+        inner = node.items()
+    elif isinstance(node, list):
+        inner = enumerate(node)
+    else:
+        yield place, node
+        return
+    for name, value in inner:
+        if deep or not isinstance(value, (dict, list)):
+            yield from leaves(value, f"{place}.{name}".lstrip("."), deep=deep)
 
 
 def dump(document: dict[str, Plain]) -> str:

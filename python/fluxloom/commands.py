@@ -124,7 +124,11 @@ def add_common(command: argparse.ArgumentParser) -> None:
     )
     form = common.add_mutually_exclusive_group()
     form.add_argument("--json", action="store_true", help="print one JSON document")
-    form.add_argument("--value", metavar="KEY", help="print this number or text, nothing else")
+    form.add_argument(
+        "--value",
+        metavar="KEY",
+        help="print this number or text, nothing else: flux, or light.links.0.rabi_hz",
+    )
     common.add_argument("--quiet", action="store_true", help="print the verdict only")
     common.add_argument(
         "--verbose", action="store_true", help="print defaults and their reasons too"
@@ -177,12 +181,18 @@ def check_apparatus(options: argparse.Namespace) -> tuple[fl.FluxCheck, Answer]:
         closed=options.closed,
         phase_budget_rad=number(options.phase_budget_rad, "phase-budget-rad", 0.5),
     )
+    light = apparatus.links(legs=found.legs, closed=found.closed)
+    cautions = list(apparatus.cautions)
     answer = Answer(FINE, {"changes": list(apparatus.changes)})
+    if light is not None:
+        cautions += light.cautions
+        answer.document["light"] = json.loads(light.to_json())
+        answer.lines += light.table().rstrip("\n").split("\n")
     answer.document["cautions"] = [
-        {"code": caution.code, "text": caution.text} for caution in apparatus.cautions
+        {"code": caution.code, "text": caution.text} for caution in cautions
     ]
     answer.notes += [f"note: {change}" for change in apparatus.changes]
-    answer.notes += [f"caution: {caution}" for caution in apparatus.cautions]
+    answer.notes += [f"caution: {caution}" for caution in cautions]
     if options.verbose:
         defaults = apparatus.defaults()
         answer.document["defaults"] = {

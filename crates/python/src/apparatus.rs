@@ -1,24 +1,23 @@
 //! `Apparatus`: the laboratory as a file.
 
-use fluxloom_core::fault::Fault;
+use fluxloom_core::limits;
 use fluxloom_plan::apparatus::Measured;
 use fluxloom_plan::cautions::Caution;
-use fluxloom_plan::files::{Data, Entry, Node};
-use fluxloom_plan::{Apparatus, Error};
+use fluxloom_plan::{Apparatus, Legs};
 use pyo3::prelude::*;
-use pyo3::types::{
-    PyBool, PyDict, PyFloat, PyInt, PyIterator, PyList, PyMapping, PyString, PyTuple,
-};
-use serde_json::Value;
+use pyo3::types::{PyBool, PyDict, PyIterator, PyMapping, PyTuple};
 
 use crate::atom::PyAtom;
+use crate::beam::PyBeam;
 use crate::check::{Judging, PyFluxCheck};
-use crate::convert::{flux, number, pairs};
+use crate::convert::{flux, pairs, small_count};
 use crate::documents::{self, document};
 use crate::enter;
 use crate::errors::{raise, wrong_type};
 use crate::lattice::PyLattice;
+use crate::links::PyLightReport;
 use crate::raman::PyRamanPair;
+use crate::settings::{DEEPEST, node, python_value};
 
 /// The laboratory as it stands: lasers, beams, lattice, field, hardware.
 ///
@@ -116,7 +115,8 @@ impl PyApparatus {
 
     /// The same apparatus with other values, by path; all faults at once.
     ///
-    /// Depth and power of the lattice move together; ``changes`` says what moved.
+    /// Depth and power of the lattice move together, and the power follows what
+    /// else changes the depth it makes; ``changes`` says what moved.
     fn replace(&self, changes: &Bound<'_, PyAny>) -> PyResult<Self> {
         let py = changes.py();
         let mut wanted = Vec::new();
@@ -162,12 +162,52 @@ impl PyApparatus {
         Ok(PyLattice { inner: self.inner.lattice().map_err(|error| raise(py, &error))? })
     }
 
-    /// The Raman beams as they stand today.
+    /// A beam of the file as light, focused on the atoms.
+    ///
+    /// Its direction is that of its place in ``raman.beams`` or ``lattice.beams``;
+    /// ``polarisation_deg`` counts from the plane of that pair. Of two radii the
+    /// first lies in the plane, the second along its normal.
+    ///
+    /// Parameters
+    /// ----------
+    /// name : str
+    ///     Its name in ``[beams]``.
+    ///
+    /// Returns
+    /// -------
+    /// Beam
+    ///
+    /// Raises
+    /// ------
+    /// InputError
+    ///     For a name that is not there (``apparatus.unknown_beam``), a beam of no
+    ///     pair (``apparatus.beam_without_direction``), or one that does not state
+    ///     power, waist or polarisation (``apparatus.not_stated``).
+    ///
+    /// Examples
+    /// --------
+    /// >>> import fluxloom as fl
+    /// >>> bay = fl.Apparatus.load("notebooks-examples/tern_bay.toml")
+    /// >>> beam = bay.beam("raman_a")
+    /// >>> beam.wavelength_nm, beam.power_mw
+    /// (769.0, 0.44)
+    fn beam(&self, py: Python<'_>, name: &str) -> PyResult<PyBeam> {
+        Ok(PyBeam { inner: self.inner.beam(name).map_err(|error| raise(py, &error))? })
+    }
+
+    /// The two beams of the lattice: those that cross, or one and its reflection.
+    fn lattice_beams(&self, py: Python<'_>) -> PyResult<(PyBeam, PyBeam)> {
+        let [first, second] = self.inner.lattice_beams().map_err(|error| raise(py, &error))?;
+        Ok((PyBeam { inner: first }, PyBeam { inner: second }))
+    }
+
+    /// The Raman beams as they stand today, with their light if both state power,
+    /// waist and polarisation.
     fn raman_pair(&self, py: Python<'_>) -> PyResult<PyRamanPair> {
         Ok(PyRamanPair { inner: self.inner.raman_pair().map_err(|error| raise(py, &error))? })
     }
 
-    /// Direction of the bias field.
+    /// Direction of the bias field, as stated.
     #[getter]
     fn field_direction(&self) -> (f64, f64, f64) {
         self.inner.field_direction().into()
@@ -191,6 +231,52 @@ impl PyApparatus {
         let options = judging.options()?;
         let target = self::flux(flux, "flux")?;
         Ok(PyFluxCheck { inner: enter::short(py, || self.inner.check(target, options))? })
+    }
+
+    /// What today's light does to the atoms: depth from power, couplings between
+    /// legs, scattering.
+    ///
+    /// Parameters
+    /// ----------
+    /// legs : int, optional
+    ///     How many states, from ``cloud.start`` on within its F: upwards in m from
+    ///     the lower half, downwards from the upper one. Up to 4 without it.
+    /// closed : bool
+    ///     Whether the last leg couples back to the first.
+    ///
+    /// Returns
+    /// -------
+    /// LightReport or None
+    ///     None if neither the lattice nor the Raman beams state power, waist and
+    ///     polarisation.
+    ///
+    /// Examples
+    /// --------
+    /// >>> import fluxloom as fl
+    /// >>> bay = fl.Apparatus.load("notebooks-examples/tern_bay.toml")
+    /// >>> report = bay.links(legs=3)
+    /// >>> round(report.depth_from_power_er, 1)
+    /// 6.0
+    /// >>> [link.b.m for link in report.links]
+    /// [-3.5, -2.5]
+    #[pyo3(signature = (*, legs=None, closed=None), text_signature = "($self, *, legs=None, closed=False)")]
+    fn links(
+        &self,
+        py: Python<'_>,
+        legs: Option<&Bound<'_, PyAny>>,
+        closed: Option<&Bound<'_, PyAny>>,
+    ) -> PyResult<Option<PyLightReport>> {
+        let wanted = Legs {
+            count: legs.map(|value| small_count(value, &limits::LEGS, "legs")).transpose()?,
+            closed: match closed {
+                Some(value) => {
+                    value.extract().map_err(|_| wrong_type("closed", value, "True or False"))?
+                }
+                None => false,
+            },
+        };
+        let report = enter::short(py, || self.inner.links(wanted))?;
+        Ok(report.map(|inner| PyLightReport { inner }))
     }
 
     fn __reduce__<'py>(slf: &Bound<'py, Self>) -> PyResult<(Bound<'py, PyAny>, (String,))> {
@@ -249,7 +335,7 @@ impl PyMeasured {
 #[pyclass(frozen, eq, module = "fluxloom", name = "Caution")]
 #[derive(PartialEq)]
 pub struct PyCaution {
-    inner: Caution,
+    pub inner: Caution,
 }
 
 document!(PyCaution);
@@ -275,86 +361,4 @@ impl PyCaution {
     fn __repr__(&self) -> String {
         format!("<Caution {}>", self.inner.code)
     }
-}
-
-/// No apparatus nests deeper than this; it stops a dict that contains itself.
-const DEEPEST: usize = 16;
-
-/// A Python value as a node of a settings tree. NaN and infinities are kept, so
-/// that they are reported with their place among all other faults.
-fn node(value: &Bound<'_, PyAny>, path: &str, depth: usize) -> PyResult<Node> {
-    if depth == 0 {
-        let fault = Fault {
-            code: "file.too_deep".to_owned(),
-            file: None,
-            line: None,
-            path: path.to_owned(),
-            message: format!(
-                "tables are nested more than {DEEPEST} deep: does one contain itself?"
-            ),
-            did_you_mean: None,
-        };
-        return Err(raise(value.py(), &Error::Faults(vec![fault])));
-    }
-    let data = if let Ok(flag) = value.cast::<PyBool>() {
-        Data::Flag(flag.is_true())
-    } else if let Ok(text) = value.cast::<PyString>() {
-        Data::Text(text.to_str()?.to_owned())
-    } else if value.is_none() {
-        Data::Null
-    } else if value.is_instance_of::<PyInt>() {
-        match value.extract() {
-            Ok(whole) => Data::Whole(whole),
-            Err(_) => Data::Number(number(value, path)?),
-        }
-    } else if let Ok(exact) = value.cast::<PyFloat>() {
-        Data::Number(exact.value())
-    } else if value.cast::<PyMapping>().is_ok() {
-        let mut entries = Vec::new();
-        for (key, item) in pairs(value, path)? {
-            let key: String = key
-                .extract()
-                .map_err(|_| wrong_type(&format!("a key of {path}"), &key, "a text"))?;
-            let node = node(&item, &format!("{path}.{key}"), depth - 1)?;
-            entries.push(Entry { key, node });
-        }
-        Data::Table(entries)
-    } else if value.is_instance_of::<PyList>() || value.is_instance_of::<PyTuple>() {
-        let mut items = Vec::new();
-        for item in value.try_iter()? {
-            items.push(node(&item?, path, depth - 1)?);
-        }
-        Data::List(items)
-    } else if let Some(iso) = value.getattr_opt("isoformat")? {
-        Data::Date(iso.call0()?.extract()?)
-    } else if let Some(items) = value.getattr_opt("tolist")? {
-        // numpy arrays and numbers become lists and numbers of Python.
-        return node(&items.call0()?, path, depth - 1);
-    } else {
-        Data::Number(number(value, path)?)
-    };
-    Ok(Node::new(data))
-}
-
-fn python_value<'py>(py: Python<'py>, value: &Value) -> PyResult<Bound<'py, PyAny>> {
-    Ok(match value {
-        Value::Null => py.None().into_bound(py),
-        Value::Bool(flag) => PyBool::new(py, *flag).to_owned().into_any(),
-        Value::Number(number) => match number.as_i64() {
-            Some(whole) => whole.into_pyobject(py)?.into_any(),
-            None => PyFloat::new(py, number.as_f64().unwrap_or(f64::NAN)).into_any(),
-        },
-        Value::String(text) => PyString::new(py, text).into_any(),
-        Value::Array(items) => {
-            let items: PyResult<Vec<_>> = items.iter().map(|item| python_value(py, item)).collect();
-            PyList::new(py, items?)?.into_any()
-        }
-        Value::Object(table) => {
-            let dict = PyDict::new(py);
-            for (key, item) in table {
-                dict.set_item(key, python_value(py, item)?)?;
-            }
-            dict.into_any()
-        }
-    })
 }

@@ -24,6 +24,7 @@ mod light;
 mod links;
 mod polarisability;
 mod raman;
+mod settings;
 mod state;
 
 use pyo3::prelude::*;
