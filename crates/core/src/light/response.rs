@@ -321,8 +321,8 @@ mod tests {
         };
         let up = between("1,0", "1,-1");
         let down = between("1,-1", "1,0");
-        assert!((up.re + 4405.449_713).abs() < 1e-5, "{up}");
-        assert!((down.re - 4404.959_022).abs() < 1e-5, "{down}");
+        assert!((up.re + 4_405.449_713).abs() < 1e-5, "{up}");
+        assert!((down.re - 4_404.959_022).abs() < 1e-5, "{down}");
         assert!(up.im.abs() + down.im.abs() < 1e-9);
     }
 
