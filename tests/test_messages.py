@@ -78,6 +78,23 @@ BAND, REACH, MOMENTUM = (
     "lattice.reach_out_of_range",
     "lattice.quasimomentum_out_of_range",
 )
+LIT = fl.RamanPair.from_beams(
+    absorb=fl.Beam(
+        wavelength_nm=769.0,
+        power_mw=0.4,
+        waist_um=200.0,
+        direction=(0, 1, 0),
+        polarisation=(0, 0, 1),
+    ),
+    emit=fl.Beam(
+        wavelength_nm=769.0,
+        power_mw=0.2,
+        waist_um=200.0,
+        direction=(1, 0, 0),
+        polarisation=(0, 1, 0),
+    ),
+)
+
 ARGUMENTS = {
     "Lattice wavelength_nm": named(lattice, "wavelength_nm", WAVE),
     "Lattice depth_er": named(lattice, "depth_er", "lattice.depth_out_of_range"),
@@ -91,6 +108,14 @@ ARGUMENTS = {
         lambda value: ATOM.tune_outs_nm((768.0, 769.5), f=4.5, m=0.5, circularity=value),
         "circularity",
         "light.circularity_out_of_range",
+        optional=True,
+    ),
+    "quality points": Argument(
+        lambda value: LIT.quality(
+            ATOM, "9/2,-9/2", "9/2,-7/2", range_nm=(768.0, 769.5), field_gauss=30.0, points=value
+        ),
+        "points",
+        "light.points_out_of_range",
         optional=True,
     ),
     "radio amplitude": Argument(

@@ -229,7 +229,7 @@ class RamanPair(_Document["RamanPair"]):
         *,
         field_gauss: _Real,
         field_direction: _Vector = (0, 0, 1),
-        uncertainty: Literal[False] = False,
+        uncertainty: Literal[False] | None = False,
     ) -> complex: ...
     @overload
     def rabi_hz(
@@ -259,7 +259,7 @@ class RamanPair(_Document["RamanPair"]):
         field_gauss: _Real,
         field_direction: _Vector = (0, 0, 1),
         lattice: Lattice | None = None,
-        uncertainty: Literal[False] = False,
+        uncertainty: Literal[False] | None = False,
     ) -> Coupling: ...
     @overload
     def coupling(
@@ -441,7 +441,7 @@ class Atom(_Document["Atom"]):
     ) -> tuple[float, ...]: ...
     @overload
     def polarisability_au(
-        self, wavelength_nm: ArrayLike, f: _Real, *, uncertainty: Literal[False] = False
+        self, wavelength_nm: ArrayLike, f: _Real, *, uncertainty: Literal[False] | None = False
     ) -> Polarisability: ...
     @overload
     def polarisability_au(
@@ -458,7 +458,7 @@ class Atom(_Document["Atom"]):
         f: _Real,
         m: _Option = None,
         circularity: _Option = 0.0,
-        uncertainty: Literal[False] = False,
+        uncertainty: Literal[False] | None = False,
     ) -> float: ...
     @overload
     def tune_out_nm(
@@ -491,7 +491,7 @@ class Atom(_Document["Atom"]):
         *,
         field_gauss: _Option = 0.0,
         field_direction: _Vector = (0, 0, 1),
-        uncertainty: Literal[False] = False,
+        uncertainty: Literal[False] | None = False,
     ) -> float: ...
     @overload
     def light_shift_hz(
@@ -526,7 +526,7 @@ class Atom(_Document["Atom"]):
         *,
         field_gauss: _Option = 0.0,
         field_direction: _Vector = (0, 0, 1),
-        uncertainty: Literal[False] = False,
+        uncertainty: Literal[False] | None = False,
     ) -> Scattering: ...
     @overload
     def scattering_per_s(
@@ -579,7 +579,7 @@ class Scattering(_Document["Scattering"]):
     total: Final[float]
     rayleigh: Final[float]
     raman: Final[float]
-    to: Final[dict[State, float]]
+    to: Final[Mapping[State, float]]
     heating_hz_per_s: Final[float]
     def __float__(self) -> float: ...
 

@@ -339,6 +339,13 @@ pub const CIRCULARITY: Limit = closed(
     (-1.0, 1.0),
     "give V of light along the field: 1 is sigma+, -1 sigma-, 0 linear",
 );
+/// Number of wavelengths of a curve.
+pub const CURVE_POINTS: Limit = closed(
+    "points",
+    "light.points_out_of_range",
+    (2.0, 1e6),
+    "ask for at least the two ends of the range",
+);
 /// Amplitude of an oscillating magnetic field.
 pub const AMPLITUDE_GAUSS: Limit = closed(
     "amplitude_gauss",
@@ -347,7 +354,7 @@ pub const AMPLITUDE_GAUSS: Limit = closed(
     "give the peak amplitude of the oscillating field in gauss",
 );
 /// Every limit, for the documentation and for tests that walk the table.
-pub const ALL: [Limit; 34] = [
+pub const ALL: [Limit; 35] = [
     WAVELENGTH_NM,
     DEPTH_ER,
     LATTICE_ANGLE_DEG,
@@ -379,6 +386,7 @@ pub const ALL: [Limit; 34] = [
     POLARISATION_DEG,
     ELLIPTICITY_DEG,
     CIRCULARITY,
+    CURVE_POINTS,
     AMPLITUDE_GAUSS,
     THREADS,
     MEMORY_BYTES,

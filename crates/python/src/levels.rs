@@ -10,7 +10,7 @@ use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::{number, pair as range, shaped, vector};
 use crate::documents::document;
 use crate::enter;
-use crate::state::{bias, pair, python_state, state, warn_unconfirmed};
+use crate::state::{atom, bias, pair, python_state, state, warn_unconfirmed};
 
 /// The levels of an atom's ground manifold at one magnetic field.
 ///
@@ -202,7 +202,7 @@ impl PyAtom {
 #[pyo3(signature = (atom, a, b, *, amplitude_gauss, direction, field_gauss, field_direction=None), text_signature = "(atom, a, b, *, amplitude_gauss, direction, field_gauss, field_direction=(0, 0, 1))")]
 pub fn radio_rabi_hz(
     py: Python<'_>,
-    atom: &PyAtom,
+    atom: &Bound<'_, PyAny>,
     a: &Bound<'_, PyAny>,
     b: &Bound<'_, PyAny>,
     amplitude_gauss: &Bound<'_, PyAny>,
@@ -210,6 +210,7 @@ pub fn radio_rabi_hz(
     field_gauss: &Bound<'_, PyAny>,
     field_direction: Option<&Bound<'_, PyAny>>,
 ) -> PyResult<Complex64> {
+    let atom = self::atom(atom)?;
     let states = (state(a, "a")?, state(b, "b")?);
     let radio = Radio {
         amplitude_gauss: number(amplitude_gauss, "amplitude_gauss")?,

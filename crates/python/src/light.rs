@@ -9,7 +9,9 @@ use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::number;
 use crate::documents::document;
 use crate::enter;
-use crate::state::{beams, bias, pair, python_state, state, uncertain, warn_light};
+use crate::state::{
+    atom, beams, bias, flag, pair, python_state, state, uncertain, warn_light, wavelengths,
+};
 
 /// Photons per second that a state scatters.
 #[pyclass(frozen, eq, module = "fluxloom", name = "Scattering")]
@@ -58,14 +60,15 @@ impl PyScattering {
         self.inner.raman
     }
 
-    /// Photons by final state, a dict in the order of the atom's states.
+    /// Photons by final state, a mapping in the order of the atom's states that
+    /// cannot be changed.
     #[getter]
-    fn to<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyDict>> {
+    fn to<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
         let rates = PyDict::new(py);
         for (state, rate) in &self.inner.to {
             rates.set_item(python_state(py, *state)?, *rate)?;
         }
-        Ok(rates)
+        py.import("types")?.getattr("MappingProxyType")?.call1((rates,))
     }
 
     /// Growth of the mean energy over h: two recoils a photon.
@@ -113,7 +116,7 @@ impl PyAtom {
     /// ...                direction=(1, 0, 0), polarisation=(0, 0, 1))
     /// >>> round(fl.Atom("87Rb").light_shift_hz(trap, 1, 0))
     /// -20537
-    #[pyo3(signature = (beams, f, m, *, field_gauss=None, field_direction=None, uncertainty=false), text_signature = "($self, beams, f, m, *, field_gauss=0.0, field_direction=(0, 0, 1), uncertainty=False)")]
+    #[pyo3(signature = (beams, f, m, *, field_gauss=None, field_direction=None, uncertainty=None), text_signature = "($self, beams, f, m, *, field_gauss=0.0, field_direction=(0, 0, 1), uncertainty=False)")]
     fn light_shift_hz<'py>(
         &self,
         beams: &Bound<'py, PyAny>,
@@ -121,21 +124,21 @@ impl PyAtom {
         m: &Bound<'py, PyAny>,
         field_gauss: Option<&Bound<'py, PyAny>>,
         field_direction: Option<&Bound<'py, PyAny>>,
-        uncertainty: bool,
+        uncertainty: Option<&Bound<'py, PyAny>>,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = f.py();
         let (lights, state) = (self::beams(beams)?, pair((f, m), "")?);
         let bias = bias(field_gauss, field_direction)?;
-        if uncertainty {
+        if flag(uncertainty, "uncertainty")? {
             let found =
                 enter::long(py, |_| self.inner.light_shift_with_error(&lights, state, &bias))?;
-            warn_light(py, self)?;
+            warn_light(py, self, wavelengths(&lights))?;
             let value = found.value.into_pyobject(py)?.into_any();
             let error = found.standard_error.into_pyobject(py)?.into_any();
             return uncertain(py, value, error, self.inner.unconfirmed_in_light());
         }
         let found = enter::short(py, || self.inner.light_shift_hz(&lights, state, &bias))?;
-        warn_light(py, self)?;
+        warn_light(py, self, wavelengths(&lights))?;
         Ok(found.into_pyobject(py)?.into_any())
     }
 
@@ -154,7 +157,7 @@ impl PyAtom {
         let states = (state(a, "a")?, state(b, "b")?);
         let bias = bias(field_gauss, field_direction)?;
         let found = enter::short(py, || self.inner.differential_shift_hz(&lights, states, &bias))?;
-        warn_light(py, self)?;
+        warn_light(py, self, wavelengths(&lights))?;
         Ok(found)
     }
 
@@ -169,7 +172,7 @@ impl PyAtom {
     /// >>> rates = fl.Atom("87Rb").scattering_per_s(trap, 1, 0)
     /// >>> round(rates.total, 6)
     /// 0.003617
-    #[pyo3(signature = (beams, f, m, *, field_gauss=None, field_direction=None, uncertainty=false), text_signature = "($self, beams, f, m, *, field_gauss=0.0, field_direction=(0, 0, 1), uncertainty=False)")]
+    #[pyo3(signature = (beams, f, m, *, field_gauss=None, field_direction=None, uncertainty=None), text_signature = "($self, beams, f, m, *, field_gauss=0.0, field_direction=(0, 0, 1), uncertainty=False)")]
     fn scattering_per_s<'py>(
         &self,
         beams: &Bound<'py, PyAny>,
@@ -177,21 +180,21 @@ impl PyAtom {
         m: &Bound<'py, PyAny>,
         field_gauss: Option<&Bound<'py, PyAny>>,
         field_direction: Option<&Bound<'py, PyAny>>,
-        uncertainty: bool,
+        uncertainty: Option<&Bound<'py, PyAny>>,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = f.py();
         let (lights, state) = (self::beams(beams)?, pair((f, m), "")?);
         let bias = bias(field_gauss, field_direction)?;
         let python = |inner| Ok::<_, PyErr>(Bound::new(py, PyScattering { inner })?.into_any());
-        if uncertainty {
+        if flag(uncertainty, "uncertainty")? {
             let found =
                 enter::long(py, |_| self.inner.scattering_with_error(&lights, state, &bias))?;
-            warn_light(py, self)?;
+            warn_light(py, self, wavelengths(&lights))?;
             let names = self.inner.unconfirmed_in_light();
             return uncertain(py, python(found.value)?, python(found.standard_error)?, names);
         }
         let found = enter::short(py, || self.inner.scattering_per_s(&lights, state, &bias))?;
-        warn_light(py, self)?;
+        warn_light(py, self, wavelengths(&lights))?;
         python(found)
     }
 }
@@ -224,16 +227,17 @@ impl PyAtom {
 #[pyo3(signature = (atom, beams, *, state, field_gauss=None, field_direction=None), text_signature = "(atom, beams, *, state, field_gauss=0.0, field_direction=(0, 0, 1))")]
 pub fn lattice_depth_er(
     py: Python<'_>,
-    atom: &PyAtom,
+    atom: &Bound<'_, PyAny>,
     beams: &Bound<'_, PyAny>,
     state: &Bound<'_, PyAny>,
     field_gauss: Option<&Bound<'_, PyAny>>,
     field_direction: Option<&Bound<'_, PyAny>>,
 ) -> PyResult<f64> {
+    let atom = self::atom(atom)?;
     let (lights, seen) = (self::beams(beams)?, self::state(state, "state")?);
     let bias = bias(field_gauss, field_direction)?;
     let found = enter::short(py, || lattice::lattice_depth_er(&atom.inner, &lights, seen, &bias))?;
-    warn_light(py, atom)?;
+    warn_light(py, atom, wavelengths(&lights))?;
     Ok(found)
 }
 
@@ -254,20 +258,21 @@ pub fn lattice_depth_er(
 #[pyo3(signature = (atom, beams, *, depth_er, state, field_gauss=None, field_direction=None), text_signature = "(atom, beams, *, depth_er, state, field_gauss=0.0, field_direction=(0, 0, 1))")]
 pub fn lattice_power_mw(
     py: Python<'_>,
-    atom: &PyAtom,
+    atom: &Bound<'_, PyAny>,
     beams: &Bound<'_, PyAny>,
     depth_er: &Bound<'_, PyAny>,
     state: &Bound<'_, PyAny>,
     field_gauss: Option<&Bound<'_, PyAny>>,
     field_direction: Option<&Bound<'_, PyAny>>,
 ) -> PyResult<f64> {
+    let atom = self::atom(atom)?;
     let (lights, seen) = (self::beams(beams)?, self::state(state, "state")?);
     let depth_er = number(depth_er, "depth_er")?;
     let bias = bias(field_gauss, field_direction)?;
     let found = enter::short(py, || {
         lattice::lattice_power_mw(&atom.inner, &lights, depth_er, (seen, &bias))
     })?;
-    warn_light(py, atom)?;
+    warn_light(py, atom, wavelengths(&lights))?;
     Ok(found)
 }
 
@@ -286,16 +291,17 @@ pub fn lattice_power_mw(
 #[pyo3(signature = (atom, beams, *, state, field_gauss=None, field_direction=None), text_signature = "(atom, beams, *, state, field_gauss=0.0, field_direction=(0, 0, 1))")]
 pub fn lattice_scattering_per_s(
     py: Python<'_>,
-    atom: &PyAtom,
+    atom: &Bound<'_, PyAny>,
     beams: &Bound<'_, PyAny>,
     state: &Bound<'_, PyAny>,
     field_gauss: Option<&Bound<'_, PyAny>>,
     field_direction: Option<&Bound<'_, PyAny>>,
 ) -> PyResult<PyScattering> {
+    let atom = self::atom(atom)?;
     let (lights, seen) = (self::beams(beams)?, self::state(state, "state")?);
     let bias = bias(field_gauss, field_direction)?;
     let inner =
         enter::short(py, || lattice::lattice_scattering_per_s(&atom.inner, &lights, seen, &bias))?;
-    warn_light(py, atom)?;
+    warn_light(py, atom, wavelengths(&lights))?;
     Ok(PyScattering { inner })
 }

@@ -12,7 +12,7 @@ use crate::atom::{PyAtom, PySourceTable};
 use crate::convert::{Numbers, number, numbers, pair, shaped};
 use crate::documents::document;
 use crate::enter;
-use crate::state::{uncertain, warn_light};
+use crate::state::{flag, uncertain, warn_light};
 
 /// The three polarisabilities for one wavelength or an array of them.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
@@ -174,12 +174,12 @@ impl PyAtom {
     /// >>> alpha = fl.Atom("40K").polarisability_au(1064.0, 4.5)
     /// >>> round(alpha.scalar, 1)
     /// 599.5
-    #[pyo3(signature = (wavelength_nm, f, *, uncertainty=false))]
+    #[pyo3(signature = (wavelength_nm, f, *, uncertainty=None), text_signature = "($self, wavelength_nm, f, *, uncertainty=False)")]
     fn polarisability_au<'py>(
         &self,
         wavelength_nm: &Bound<'py, PyAny>,
         f: &Bound<'py, PyAny>,
-        uncertainty: bool,
+        uncertainty: Option<&Bound<'py, PyAny>>,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = f.py();
         let found = numbers(wavelength_nm, "wavelength_nm")?;
@@ -187,7 +187,7 @@ impl PyAtom {
         let Numbers { shape, values } = found;
         let f = number(f, "f")?;
         let atom = &self.inner;
-        if !uncertainty {
+        if !flag(uncertainty, "uncertainty")? {
             let rows = enter::long(py, |control| {
                 allow_numbers(&[values.len()], 48)?;
                 let mut rows = Vec::with_capacity(values.len());
@@ -197,7 +197,7 @@ impl PyAtom {
                 }
                 Ok::<_, fluxloom_core::Error>(rows)
             })?;
-            warn_light(py, self)?;
+            warn_light(py, self, values.iter().copied())?;
             let found = PyPolarisability { inner: Table { atom: atom.clone(), shape, rows } };
             return Ok(Bound::new(py, found)?.into_any());
         }
@@ -208,7 +208,7 @@ impl PyAtom {
             };
             values.iter().map(one).collect::<Result<Vec<_>, _>>()
         })?;
-        warn_light(py, self)?;
+        warn_light(py, self, values.iter().copied())?;
         let rows = found.iter().map(|one| one.value).collect();
         let value =
             PyPolarisability { inner: Table { atom: atom.clone(), shape: shape.clone(), rows } };
@@ -227,7 +227,7 @@ impl PyAtom {
         let py = f.py();
         let f = number(f, "f")?;
         let found = enter::short(py, || self.inner.static_polarisability_au(f))?;
-        warn_light(py, self)?;
+        warn_light(py, self, [])?;
         Ok(PyPolarisability::one(&self.inner, found))
     }
 
@@ -256,26 +256,26 @@ impl PyAtom {
     /// >>> import fluxloom as fl
     /// >>> round(fl.Atom("87Rb").tune_out_nm((785.0, 794.0), f=2), 4)
     /// 790.0324
-    #[pyo3(signature = (range_nm, *, f, m=None, circularity=None, uncertainty=false), text_signature = "($self, range_nm, *, f, m=None, circularity=0.0, uncertainty=False)")]
+    #[pyo3(signature = (range_nm, *, f, m=None, circularity=None, uncertainty=None), text_signature = "($self, range_nm, *, f, m=None, circularity=0.0, uncertainty=False)")]
     fn tune_out_nm<'py>(
         &self,
         range_nm: &Bound<'py, PyAny>,
         f: &Bound<'py, PyAny>,
         m: Option<&Bound<'py, PyAny>>,
         circularity: Option<&Bound<'py, PyAny>>,
-        uncertainty: bool,
+        uncertainty: Option<&Bound<'py, PyAny>>,
     ) -> PyResult<Bound<'py, PyAny>> {
         let py = f.py();
         let (range_nm, what) = (pair(range_nm, "range_nm")?, tune_out(f, m, circularity)?);
-        if uncertainty {
+        if flag(uncertainty, "uncertainty")? {
             let found = enter::long(py, |_| self.inner.tune_out_with_error(range_nm, &what))?;
-            warn_light(py, self)?;
+            warn_light(py, self, [found.value])?;
             let value = found.value.into_pyobject(py)?.into_any();
             let error = found.standard_error.into_pyobject(py)?.into_any();
             return uncertain(py, value, error, self.inner.unconfirmed_in_light());
         }
         let found = enter::long(py, |_| self.inner.tune_out_nm(range_nm, &what))?;
-        warn_light(py, self)?;
+        warn_light(py, self, [found])?;
         Ok(found.into_pyobject(py)?.into_any())
     }
 
@@ -292,7 +292,7 @@ impl PyAtom {
         let py = f.py();
         let (range_nm, what) = (pair(range_nm, "range_nm")?, tune_out(f, m, circularity)?);
         let found = enter::long(py, |_| self.inner.tune_outs_nm(range_nm, &what))?;
-        warn_light(py, self)?;
+        warn_light(py, self, found.iter().copied())?;
         PyTuple::new(py, found)
     }
 }

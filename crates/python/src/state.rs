@@ -29,6 +29,24 @@ fn class<'py>(
     Ok(found.bind(py))
 }
 
+/// An atom, or the error that says how to get one.
+pub fn atom<'a>(value: &'a Bound<'_, PyAny>) -> PyResult<&'a PyAtom> {
+    let found = value.cast::<PyAtom>();
+    Ok(found.map_err(|_| wrong_type("atom", value, "an Atom such as fl.Atom(\"40K\")"))?.get())
+}
+
+/// True or False; not given is False.
+pub fn flag(value: Option<&Bound<'_, PyAny>>, field: &str) -> PyResult<bool> {
+    value.map_or(Ok(false), |value| {
+        value.extract().map_err(|_| wrong_type(field, value, "True or False"))
+    })
+}
+
+/// Wavelengths of beams.
+pub fn wavelengths(beams: &[Beam]) -> impl Iterator<Item = f64> {
+    beams.iter().map(Beam::wavelength_nm)
+}
+
 /// A state: `"9/2,-7/2"` or a pair of numbers.
 pub fn state(value: &Bound<'_, PyAny>, field: &str) -> PyResult<State> {
     const WANTED: &str = "a state such as \"9/2,-7/2\" or (4.5, -3.5)";
@@ -111,8 +129,13 @@ pub fn warn_unconfirmed(py: Python<'_>, atom: &PyAtom, names: &[String]) -> PyRe
     warn(py, atom, about)
 }
 
-/// As [`warn_unconfirmed`] for light, where a missing residual polarisability counts.
-pub fn warn_light(py: Python<'_>, atom: &PyAtom) -> PyResult<()> {
+/// As [`warn_unconfirmed`] for light of some wavelengths: a missing residual
+/// polarisability counts, and lines that the table does not have.
+pub fn warn_light(
+    py: Python<'_>,
+    atom: &PyAtom,
+    wavelengths_nm: impl IntoIterator<Item = f64>,
+) -> PyResult<()> {
     let names = atom.inner.unconfirmed_in_light();
     let mut about = Vec::new();
     if !names.is_empty() {
@@ -120,6 +143,15 @@ pub fn warn_light(py: Python<'_>, atom: &PyAtom) -> PyResult<()> {
     }
     if !atom.inner.has_residual() {
         about.push("its listed lines alone, without the polarisability of all others".to_owned());
+    }
+    let bluest = wavelengths_nm.into_iter().fold(f64::INFINITY, f64::min);
+    if let (true, Some(nm)) =
+        (atom.inner.is_beyond_lines(bluest), atom.inner.next_unlisted_line_nm())
+    {
+        about.push(format!(
+            "a table that ends before its next line at {nm} nm, to which light at {bluest:.1} nm \
+             is near or beyond"
+        ));
     }
     warn(py, atom, about)
 }

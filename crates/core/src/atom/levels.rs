@@ -297,8 +297,10 @@ fn pair(
     places: (usize, usize),
 ) -> Level {
     // E = mean +- root; the level that lies higher at rest keeps the upper sign.
+    // Without a hyperfine splitting F = I+1/2 counts as the higher one.
     let at_rest = own.at_rest - partner.at_rest;
-    let sign = if at_rest < 0.0 { -1.0 } else { 1.0 };
+    let lower = if at_rest == 0.0 { places.0 > places.1 } else { at_rest < 0.0 };
+    let sign = if lower { -1.0 } else { 1.0 };
     let half_slope = (own.slope - partner.slope) / 2.0;
     let gap = at_rest / 2.0 + half_slope * field_gauss;
     let coupling = link * field_gauss;

@@ -11,6 +11,7 @@
 
 use super::state::{State, halves_text};
 use crate::error::Error;
+use crate::limits::plain;
 
 /// The states |F, m> of a ground level with J = 0 or 1/2: largest F first, m ascending.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -78,7 +79,7 @@ impl Manifold {
     /// [`Error::NoSuchState`] listing the F that exist.
     pub fn find_level(&self, atom: &str, f: f64) -> Result<usize, Error> {
         let found = self.twice_f.iter().position(|twice| f64::from(*twice) == 2.0 * f);
-        found.ok_or_else(|| self.foreign(atom, &format!("F = {f}")))
+        found.ok_or_else(|| self.foreign(atom, &format!("F = {}", plain(f))))
     }
 
     /// The error of a state or F that the atom does not have.

@@ -9,6 +9,7 @@
 //! Single-photon recoil: `E_R/h = h/(2 m lambda^2)`, `v = h/(m lambda)`.
 
 mod breit_rabi;
+mod coverage;
 mod dipoles;
 mod insensitive;
 mod levels;
@@ -32,7 +33,7 @@ pub use number::{DataSource, DataStatus, Number};
 pub use resolve::{Ground, Line};
 pub use state::{State, halves_text};
 pub use structure::{LineStructure, Structure};
-pub use uncertainty::{Uncertain, standard_errors};
+pub use uncertainty::{Uncertain, standard_errors, standard_errors_of_all};
 
 use crate::constants::{ATOMIC_MASS_KG, PLANCK_J_S};
 use crate::error::Error;

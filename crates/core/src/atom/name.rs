@@ -13,10 +13,16 @@ const LONGEST_SLIP: usize = 40;
 pub(super) fn find(name: &str) -> Result<&'static Isotope, Error> {
     let isotopes = &table().isotopes;
     isotopes.iter().find(|isotope| isotope.name == name).ok_or_else(|| Error::UnknownAtom {
-        name: name.to_owned(),
+        name: shortened(name),
         suggestion: meant(name).map(str::to_owned),
         known: isotopes.iter().map(|isotope| isotope.name.as_str()).collect::<Vec<_>>().join(", "),
     })
+}
+
+/// A name as an error repeats it.
+fn shortened(name: &str) -> String {
+    let short: String = name.chars().take(LONGEST_SLIP).collect();
+    if short.len() < name.len() { short + "..." } else { short }
 }
 
 fn meant(name: &str) -> Option<&'static str> {

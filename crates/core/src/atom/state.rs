@@ -8,6 +8,7 @@ use std::str::FromStr;
 use serde::{Deserialize, Serialize};
 
 use crate::error::Error;
+use crate::limits::plain;
 
 /// F and m of any atom stay far below this.
 const LARGEST: i32 = 1000;
@@ -27,7 +28,7 @@ impl State {
     /// [`Error::BadState`] for numbers that are not multiples of one half, for
     /// a negative F, |m| > F, or a whole F with a half-integer m.
     pub fn from_pair((f, m): (f64, f64)) -> Result<Self, Error> {
-        let shown = || format!("({f}, {m})");
+        let shown = || format!("({}, {})", plain(f), plain(m));
         match (halves(f), halves(m)) {
             (Some(twice_f), Some(twice_m)) => Self::from_halves(twice_f, twice_m)
                 .map_err(|why| Error::BadState { text: shown(), why }),

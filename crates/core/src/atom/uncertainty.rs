@@ -1,9 +1,11 @@
 //! Standard errors that results inherit from the atomic data.
 //!
 //! To first order: every number of the table with an uncertainty is moved up and
-//! down by it, everything is computed anew, and half the differences are added
-//! in squares. Numbers without an uncertainty, and numbers of the user's own,
-//! count as exact.
+//! down by a small part of it, everything is computed anew, and the differences,
+//! scaled to the whole uncertainty, are added in squares. (Moving by the whole
+//! could take a line across the light; so an error may come out larger than its
+//! value, which then is not known at all.) Numbers without an uncertainty, and
+//! numbers of the user's own, count as exact.
 //!
 //! Numbers are taken as independent, but for lines whose strengths the table
 //! joins by a measured ratio R = d_over^2/d_under^2: then d_over moves both
@@ -23,30 +25,58 @@ pub struct Uncertain<T> {
     pub standard_error: T,
 }
 
-/// A way in which the data may be wrong by one standard error.
+/// A way in which the data may be wrong: moves them by so many standard errors.
 type Move<'a> = Box<dyn Fn(&mut Structure, f64) + 'a>;
 
-/// Standard errors of the numbers that `compute` returns.
+/// The part of an uncertainty by which a number is moved.
+const STEP: f64 = 1e-2;
+
+/// Standard errors of the numbers that `compute` returns, always as many.
 ///
 /// # Errors
-/// Those of `compute`.
+/// Those of `compute`, but for a line that was moved too near to the light: then
+/// the step away from it decides alone.
 pub fn standard_errors<const N: usize>(
     atom: &Atom,
     compute: impl Fn(&Structure) -> Result<[f64; N], Error>,
 ) -> Result<[f64; N], Error> {
-    let mut squares = [0.0; N];
+    let found = standard_errors_of_all(atom, |structure| Ok(compute(structure)?.to_vec()))?;
+    Ok(std::array::from_fn(|place| found.get(place).copied().unwrap_or_default()))
+}
+
+/// As [`standard_errors`], for numbers that are counted only when computed.
+///
+/// # Errors
+/// As [`standard_errors`].
+pub fn standard_errors_of_all(
+    atom: &Atom,
+    compute: impl Fn(&Structure) -> Result<Vec<f64>, Error>,
+) -> Result<Vec<f64>, Error> {
+    let structure = atom.structure();
+    let here = compute(&structure)?;
+    let mut squares = vec![0.0; here.len()];
     for shift in moves(atom) {
-        let at = |sign: f64| -> Result<[f64; N], Error> {
-            let mut structure = atom.structure();
-            shift(&mut structure, sign);
-            compute(&structure)
+        let at = |sign: f64| -> Result<Option<Vec<f64>>, Error> {
+            let mut moved = structure.clone();
+            shift(&mut moved, sign * STEP);
+            match compute(&moved) {
+                Ok(values) => Ok(Some(values)),
+                Err(Error::OnResonance { .. }) => Ok(None),
+                Err(other) => Err(other),
+            }
         };
-        for ((square, up), down) in squares.iter_mut().zip(at(1.0)?).zip(at(-1.0)?) {
-            let half = 0.5 * (up - down);
-            *square += half * half;
+        let (up, down, steps) = match (at(1.0)?, at(-1.0)?) {
+            (Some(up), Some(down)) => (up, down, 2.0),
+            (Some(up), None) => (up, here.clone(), 1.0),
+            (None, Some(down)) => (here.clone(), down, 1.0),
+            (None, None) => continue,
+        };
+        for ((square, up), down) in squares.iter_mut().zip(up).zip(down) {
+            let change = (up - down) / (steps * STEP);
+            *square += change * change;
         }
     }
-    Ok(squares.map(f64::sqrt))
+    Ok(squares.into_iter().map(f64::sqrt).collect())
 }
 
 fn moves(atom: &Atom) -> Vec<Move<'_>> {

@@ -18,6 +18,7 @@ impl Error {
             Self::NoSuchState { .. } => "state.unknown",
             Self::OnResonance { .. } => "light.on_resonance",
             Self::NoLattice { .. } => "lattice.no_interference",
+            Self::PowerOutOfReach { .. } => "lattice.power_out_of_reach",
             Self::TuneOutCount { found_nm, .. } if found_nm.is_empty() => "light.no_tune_out",
             Self::TuneOutCount { .. } => "light.several_tune_outs",
             Self::UnknownData { .. } => "atom.unknown_data",
@@ -35,7 +36,7 @@ impl Error {
     pub fn kind(&self) -> Kind {
         match self {
             Self::NotLocalised { .. } => Kind::Numerical,
-            Self::NoLattice { .. } => Kind::Infeasible,
+            Self::NoLattice { .. } | Self::PowerOutOfReach { .. } => Kind::Infeasible,
             Self::Cancelled => Kind::Cancelled,
             _ => Kind::Input,
         }
@@ -82,6 +83,12 @@ impl Error {
                 ("window_hz", Number(*window_hz)),
                 ("below_nm", Number(outside_nm.0)),
                 ("above_nm", Number(outside_nm.1)),
+            ],
+            Self::PowerOutOfReach { state, depth_er, power_mw, most_mw } => vec![
+                ("state", Text(state.clone())),
+                ("depth_er", Number(*depth_er)),
+                ("power_mw", Number(*power_mw)),
+                ("high", Number(*most_mw)),
             ],
             Self::NoLattice { state, wavelength_nm } => {
                 vec![("state", Text(state.clone())), ("wavelength_nm", Number(*wavelength_nm))]

@@ -65,8 +65,8 @@ pub enum Error {
     },
     /// A lower and an upper end are the wrong way round.
     #[error(
-        "{field} = ({}, {}) is empty: the first number must be smaller than the second; swap them",
-        plain(*low), plain(*high)
+        "{field} = ({}, {}) is empty: the first number must be smaller than the second; {}",
+        plain(*low), plain(*high), if low > high { "swap them" } else { "widen it" }
     )]
     EmptyRange {
         /// Name of the field.
@@ -174,6 +174,21 @@ pub enum Error {
         state: String,
         /// Vacuum wavelength, nm.
         wavelength_nm: f64,
+    },
+    /// A lattice that takes more power than any beam may have.
+    #[error(
+        "a lattice of depth_er = {} for {state} takes {power_mw:.3e} mW, more than the {} mW a beam may have: the light is nearly at a tune-out, the waist is large, or the polarisations are nearly orthogonal; change one of these",
+        plain(*depth_er), plain(*most_mw)
+    )]
+    PowerOutOfReach {
+        /// The state.
+        state: String,
+        /// The depth asked for.
+        depth_er: f64,
+        /// The power it takes, mW.
+        power_mw: f64,
+        /// The most power of a beam, mW.
+        most_mw: f64,
     },
     /// Not exactly one tune-out in a range.
     #[error("{}", tune_out_message(self))]

@@ -21,7 +21,7 @@ use crate::light::response::{HZ_PER_AU_INTENSITY, Operator};
 use crate::light::scattering::Scattering;
 use crate::light::shift::Illumination;
 use crate::light::{Beam, Bias};
-use crate::limits::DEPTH_ER;
+use crate::limits::{DEPTH_ER, POWER_MW};
 use crate::vector::dot;
 
 /// Colours that differ by more than this part make a lattice that runs away.
@@ -118,7 +118,8 @@ pub fn lattice_depth_er(
 ///
 /// # Errors
 /// As [`lattice_depth_er`]; [`Error::OutOfRange`] for the depth;
-/// [`Error::NoLattice`] if no power makes one.
+/// [`Error::NoLattice`] if no power makes one, [`Error::PowerOutOfReach`] if it
+/// takes more than a beam may have.
 pub fn lattice_power_mw(
     atom: &Atom,
     beams: &[Beam],
@@ -132,16 +133,29 @@ pub fn lattice_power_mw(
     }
     let today = lattice_depth_er(atom, &[first, second], state, bias)?;
     // Both powers grow together, so the depth goes as either.
-    let power_mw = first.power_mw() * depth_er / today;
+    let factor = depth_er / today;
+    let power_mw = first.power_mw() * factor;
     if today > 0.0 && power_mw.is_finite() {
-        return Ok(power_mw);
+        let larger_mw = factor * first.power_mw().max(second.power_mw());
+        if larger_mw <= POWER_MW.high {
+            return Ok(power_mw);
+        }
+        return Err(Error::PowerOutOfReach {
+            state: state.to_string(),
+            depth_er,
+            power_mw: larger_mw,
+            most_mw: POWER_MW.high,
+        });
     }
     Err(Error::NoLattice { state: state.to_string(), wavelength_nm: first.wavelength_nm() })
 }
 
 /// Scattering of atoms that sit on the sites of a lattice: where the shift is
 /// lowest, the amplitudes of both beams add up to the light the atoms see. The
-/// width of the atoms on their site is not looked at.
+/// width of the atoms on their site is not looked at. The heating is that of both
+/// beams by themselves: the gradient of the field heats where its strength does
+/// not, and in a standing wave the sum is the same everywhere (Gordon, Ashkin,
+/// Phys. Rev. A 21, 1606 (1980); from memory).
 ///
 /// # Errors
 /// As [`lattice_depth_er`].
@@ -164,5 +178,8 @@ pub fn lattice_scattering_per_s(
             *total += part * factor;
         }
     }
-    atom.scattering_of(place, &[Illumination { frequency_hz, amplitude: sum }], bias.field_gauss)
+    let on_site = Illumination { frequency_hz, amplitude: sum };
+    let heating_hz_per_s = atom.scattering_of(place, &lights, bias.field_gauss)?.heating_hz_per_s;
+    let found = atom.scattering_of(place, &[on_site], bias.field_gauss)?;
+    Ok(Scattering { heating_hz_per_s, ..found })
 }

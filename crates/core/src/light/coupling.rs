@@ -2,16 +2,17 @@
 //! rule it is weak, and what would make it stronger.
 //!
 //! With C = u2* x u1, the vector part drives Delta m = 0 (between different F)
-//! by the component of C along the field and Delta m = +-1 by the part across
-//! it; |Delta m| = 2 comes from the tensor part alone; two photons do no more.
-//! Numbers come from the computed operator, never from the rule.
+//! by the component of C along the field and Delta m = +-1 by its components
+//! across it; |Delta m| = 2 comes from the tensor part alone; two photons do no
+//! more. Numbers come from the computed operator, never from the rule. What
+//! would drive a weak coupling better is in [`super::alternatives`].
 
 use num_complex::Complex64;
 use serde::{Deserialize, Serialize};
 
+use super::RamanPair;
 use super::bias::Bias;
-use super::polarisation::{self, Helicity};
-use super::{Beam, RamanPair};
+use super::products::Products;
 use crate::Atom;
 use crate::atom::{State, halves_text};
 use crate::documents::Document;
@@ -21,9 +22,12 @@ use crate::error::Error;
 /// beams cannot be used.
 pub const FORBIDDEN: f64 = 1e-2;
 
+/// Couplings below this part of the largest one are zero but for rounding.
+pub(super) const ROUNDING: f64 = 1e-9;
+
 /// A coupling b <- a with its explanation.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(try_from = "RawCoupling")]
 pub struct Coupling {
     /// The atom, whose numbers stand behind the result.
     pub atom: Atom,
@@ -36,7 +40,8 @@ pub struct Coupling {
     /// Its scalar, vector and tensor parts, Hz.
     pub ranks: [Complex64; 3],
     /// Size over that of the largest coupling with |Delta m| <= 1 that the same
-    /// beams make between any two states.
+    /// beams make between two states; where they make none, over that of the
+    /// largest of all.
     pub relative: f64,
     /// Which part of the light drives it, and whether it can be used.
     pub rule: String,
@@ -52,11 +57,69 @@ impl Document for Coupling {
     const FORMAT: &'static str = "fluxloom-coupling";
 }
 
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawCoupling {
+    atom: Atom,
+    from: State,
+    to: State,
+    rabi_hz: Complex64,
+    ranks: [Complex64; 3],
+    relative: f64,
+    rule: String,
+    alternatives: Vec<String>,
+    kick: Option<f64>,
+    effective_rabi_hz: Complex64,
+}
+
+impl TryFrom<RawCoupling> for Coupling {
+    type Error = Error;
+
+    fn try_from(raw: RawCoupling) -> Result<Self, Error> {
+        for state in [raw.from, raw.to] {
+            raw.atom.manifold().find(raw.atom.name(), state)?;
+        }
+        if raw.relative < 0.0 {
+            return Err(Error::Contradiction {
+                code: "coupling.negative_size",
+                message: format!("relative = {} is a ratio of sizes, not negative", raw.relative),
+            });
+        }
+        Ok(Self {
+            atom: raw.atom,
+            from: raw.from,
+            to: raw.to,
+            rabi_hz: raw.rabi_hz,
+            ranks: raw.ranks,
+            relative: raw.relative,
+            rule: raw.rule,
+            alternatives: raw.alternatives,
+            kick: raw.kick,
+            effective_rabi_hz: raw.effective_rabi_hz,
+        })
+    }
+}
+
 impl Coupling {
-    /// Whether the coupling is too weak to be used.
+    /// Whether the coupling is too weak to be used. A state with itself is not
+    /// coupled, so nothing is forbidden.
     #[must_use]
     pub fn is_forbidden(&self) -> bool {
-        self.relative < FORBIDDEN
+        self.from != self.to && self.relative < FORBIDDEN
+    }
+}
+
+/// What a coupling is measured by.
+pub(super) struct Yardstick {
+    /// Size of the largest coupling, Hz.
+    largest_hz: f64,
+    /// Whether that has |Delta m| <= 1.
+    is_usual: bool,
+}
+
+impl Yardstick {
+    pub(super) fn of(&self, size_hz: f64) -> f64 {
+        if self.largest_hz > 0.0 { size_hz / self.largest_hz } else { 0.0 }
     }
 }
 
@@ -73,223 +136,119 @@ impl RamanPair {
     ) -> Result<Coupling, Error> {
         let ranks = self.rabi_by_rank_hz(atom, (a, b), bias)?;
         let rabi_hz: Complex64 = ranks.iter().sum();
-        let largest = self.largest_hz(atom, bias)?;
-        let relative = if largest > 0.0 { rabi_hz.norm() / largest } else { 0.0 };
+        let yardstick = self.yardstick(atom, bias)?;
         let mut coupling = Coupling {
             atom: atom.clone(),
             from: a,
             to: b,
             rabi_hz,
             ranks,
-            relative,
-            rule: self.rule(atom, (a, b), bias, (&ranks, relative))?,
+            relative: yardstick.of(rabi_hz.norm()),
+            rule: String::new(),
             alternatives: Vec::new(),
             kick: None,
             effective_rabi_hz: rabi_hz,
         };
-        if coupling.is_forbidden() && a != b {
+        if let Some(dark) = self.dark_beam()? {
+            coupling.rule =
+                format!("the {dark} beam has no power at the atoms: nothing is coupled");
+            return Ok(coupling);
+        }
+        coupling.rule = self.rule(&coupling, bias, &yardstick)?;
+        if coupling.is_forbidden() {
             coupling.alternatives = self.alternatives(atom, (a, b), bias)?;
         }
         Ok(coupling)
     }
 
-    /// Size of the largest coupling between two states with |Delta m| <= 1.
-    fn largest_hz(&self, atom: &Atom, bias: &Bias) -> Result<f64, Error> {
+    /// A beam without intensity at the atoms, by its role.
+    fn dark_beam(&self) -> Result<Option<&'static str>, Error> {
+        let [absorb, emit] = self.beams()?;
+        for (role, beam) in [("absorbed", absorb), ("emitted", emit)] {
+            if beam.intensity_w_per_m2([0.0; 3])? == 0.0 {
+                return Ok(Some(role));
+            }
+        }
+        Ok(None)
+    }
+
+    /// The largest coupling between two states with |Delta m| <= 1, or, where these
+    /// beams make none, of all.
+    pub(super) fn yardstick(&self, atom: &Atom, bias: &Bias) -> Result<Yardstick, Error> {
         let matrix = self.rabi_matrix_hz(atom, bias)?;
         let states = &atom.manifold().states;
-        let mut largest = 0.0_f64;
+        let (mut usual, mut all) = (0.0_f64, 0.0_f64);
         for ((to, from), element) in matrix.indexed_iter() {
             if let (Some(b), Some(a)) = (states.get(to), states.get(from))
                 && to != from
-                && (b.twice_m() - a.twice_m()).abs() <= 2
             {
-                largest = largest.max(element.norm());
+                all = all.max(element.norm());
+                if (b.twice_m() - a.twice_m()).abs() <= 2 {
+                    usual = usual.max(element.norm());
+                }
             }
         }
-        Ok(largest)
+        let is_usual = usual > ROUNDING * all;
+        Ok(Yardstick { largest_hz: if is_usual { usual } else { all }, is_usual })
     }
 
     fn rule(
         &self,
-        atom: &Atom,
-        (a, b): (State, State),
+        coupling: &Coupling,
         bias: &Bias,
-        (ranks, relative): (&[Complex64; 3], f64),
+        yardstick: &Yardstick,
     ) -> Result<String, Error> {
-        let (along, across) = self.vector_parts(bias)?;
+        let (a, b) = (coupling.from, coupling.to);
         let step = (b.twice_m() - a.twice_m()) / 2;
+        if a == b {
+            return Ok(format!("{a} to itself: a light shift that goes with the kick"));
+        }
         let levels = if a.twice_f() == b.twice_f() {
             format!("within F = {}", halves_text(a.twice_f()))
         } else {
             format!("F = {} to F = {}", halves_text(a.twice_f()), halves_text(b.twice_f()))
         };
+        let component = self.vector_component(bias, step)?;
         let mut rule = match step.abs() {
-            0 if a == b => format!("{a} to itself: a light shift that goes with the kick"),
             0 => format!(
                 "Delta m = 0, {levels}: the vector part drives it by the component of u2* x u1 \
-                 along the field, {along:.3} here (1 at most)"
+                 along the field, {component:.3} here (1 at most)"
             ),
             1 => format!(
-                "Delta m = {step:+}, {levels}: the vector part drives it by the part of u2* x u1 \
-                 across the field, {across:.3} here (1 at most)"
+                "Delta m = {step:+}, {levels}: the vector part drives it by the component of \
+                 u2* x u1 across the field that goes with {step:+}, {component:.3} here (1 at most)"
             ),
             2 => format!(
                 "Delta m = {step:+}, {levels}: only the tensor part drives it, which far from the \
-                 excited hyperfine structure is small{}",
-                if atom.ground_spin() > 0.0 { "" } else { " unless the line is narrow and near" }
+                 excited hyperfine structure is small"
             ),
-            _ => format!("Delta m = {step:+}: two photons change m by 2 at most"),
+            _ => return Ok(format!("Delta m = {step:+}: two photons change m by 2 at most")),
         };
-        let total: f64 = ranks.iter().map(|part| part.norm()).sum();
-        if total > 0.0 && a != b {
-            let [_, vector, tensor] = ranks.map(|part| part.norm() / total);
-            rule += &format!("; vector {}, tensor {}", percent(vector), percent(tensor));
+        let total: f64 = coupling.ranks.iter().map(|part| part.norm()).sum();
+        if total > 0.0 {
+            let [scalar, vector, tensor] = coupling.ranks.map(|part| percent(part.norm() / total));
+            rule += &format!("; scalar {scalar}, vector {vector}, tensor {tensor}");
         }
-        if a != b {
-            let verdict = if relative < FORBIDDEN {
-                " of the largest coupling of these beams with |Delta m| <= 1: too weak to be used"
-            } else {
-                " of the largest coupling of these beams with |Delta m| <= 1"
-            };
-            let size = if relative == 0.0 { "0".to_owned() } else { format!("{relative:.2e}") };
-            rule += &format!("; {size}{verdict}");
-        }
-        Ok(rule)
+        let size = if coupling.relative == 0.0 {
+            "0".to_owned()
+        } else {
+            format!("{:.2e}", coupling.relative)
+        };
+        let usual = if yardstick.is_usual { " with |Delta m| <= 1" } else { "" };
+        let verdict = if coupling.is_forbidden() { ": too weak to be used" } else { "" };
+        Ok(rule + &format!("; {size} of the largest coupling of these beams{usual}{verdict}"))
     }
 
-    /// Sizes of u2* x u1 along and across the field.
-    fn vector_parts(&self, bias: &Bias) -> Result<(f64, f64), Error> {
+    /// Size of the component of u2* x u1 that changes m by `step` (0 or +-1).
+    fn vector_component(&self, bias: &Bias, step: i32) -> Result<f64, Error> {
         let [absorb, emit] = self.beams()?;
         let axes = bias.axes()?;
-        let [x1, y1, z1] = axes.components(absorb.unit_polarisation());
-        let [x2, y2, z2] = axes.components(emit.unit_polarisation()).map(|part| part.conj());
-        let across = (y2 * z1 - z2 * y1).norm().hypot((z2 * x1 - x2 * z1).norm());
-        Ok(((x2 * y1 - y2 * x1).norm(), across))
+        let absorbed = axes.components(absorb.unit_polarisation());
+        let emitted = axes.components(emit.unit_polarisation()).map(|part| part.conj());
+        let [_, vector, _] = Products::new(emitted, absorbed).opposite(step);
+        // The product of rank 1 is (i/sqrt 2) u2* x u1.
+        Ok(std::f64::consts::SQRT_2 * vector.norm())
     }
-
-    fn alternatives(
-        &self,
-        atom: &Atom,
-        (a, b): (State, State),
-        bias: &Bias,
-    ) -> Result<Vec<String>, Error> {
-        let mut found = Vec::new();
-        let here = self.rabi_hz(atom, (a, b), bias)?.norm();
-        let step = (b.twice_m() - a.twice_m()).abs() / 2;
-        if step <= 1 {
-            found.extend(self.other_polarisations(atom, (a, b), bias, here)?);
-            found.extend(self.other_field(atom, (a, b), bias, here)?);
-            found.push(
-                "an oscillating magnetic field at the splitting (radio_rabi_hz): a link without \
-                 kick, so without flux"
-                    .to_owned(),
-            );
-            return Ok(found);
-        }
-        for (middle, first, second) in self.two_steps(atom, (a, b), bias)? {
-            found.push(format!(
-                "two links by way of {middle}: {} and {} with these beams",
-                hertz(first),
-                hertz(second)
-            ));
-        }
-        if step > 2 {
-            found.push(format!("a chain of {} links with |Delta m| = 1", step));
-        }
-        Ok(found)
-    }
-
-    /// The best of the usual polarisations, if it is better than today's.
-    fn other_polarisations(
-        &self,
-        atom: &Atom,
-        states: (State, State),
-        bias: &Bias,
-        here: f64,
-    ) -> Result<Option<String>, Error> {
-        let [absorb, emit] = self.beams()?;
-        let mut best = (here, None);
-        for (name1, one) in usual(&absorb, bias)? {
-            for (name2, two) in usual(&emit, bias)? {
-                let size = Self::from_beams(one, two)?.rabi_hz(atom, states, bias)?.norm();
-                // What differs by rounding is not better.
-                if size > best.0 * (1.0 + 1e-9) {
-                    best = (size, Some(format!("absorb {name1}, emit {name2}")));
-                }
-            }
-        }
-        let (size, names) = best;
-        Ok(names.filter(|_| size > 2.0 * here).map(|names| {
-            format!("other polarisations: {names} gives {} in this field", hertz(size))
-        }))
-    }
-
-    /// The best of the laboratory's axes for the field, if it is better than today's.
-    fn other_field(
-        &self,
-        atom: &Atom,
-        states: (State, State),
-        bias: &Bias,
-        here: f64,
-    ) -> Result<Option<String>, Error> {
-        let mut best = (2.0 * here, None);
-        for (name, field_direction) in
-            [("x", [1.0, 0.0, 0.0]), ("y", [0.0, 1.0, 0.0]), ("z", [0.0, 0.0, 1.0])]
-        {
-            let size = self.rabi_hz(atom, states, &Bias { field_direction, ..*bias })?.norm();
-            if size > best.0 * (1.0 + 1e-9) {
-                best = (size, Some(name));
-            }
-        }
-        let (size, name) = best;
-        Ok(name
-            .map(|name| format!("a field along {name} with these polarisations: {}", hertz(size))))
-    }
-
-    /// States half-way, with both couplings, Hz.
-    fn two_steps(
-        &self,
-        atom: &Atom,
-        (a, b): (State, State),
-        bias: &Bias,
-    ) -> Result<Vec<(State, f64, f64)>, Error> {
-        let mut found = Vec::new();
-        if (b.twice_m() - a.twice_m()).abs() != 4 {
-            return Ok(found);
-        }
-        let twice_m = (a.twice_m() + b.twice_m()) / 2;
-        for state in &atom.manifold().states {
-            if state.twice_m() == twice_m {
-                let first = self.rabi_hz(atom, (a, *state), bias)?.norm();
-                let second = self.rabi_hz(atom, (*state, b), bias)?.norm();
-                found.push((*state, first, second));
-            }
-        }
-        found.sort_by(|x, y| y.1.min(y.2).total_cmp(&x.1.min(x.2)));
-        found.truncate(2);
-        Ok(found)
-    }
-}
-
-/// A beam with the polarisations that are easily made, with their names.
-fn usual(beam: &Beam, bias: &Bias) -> Result<Vec<(&'static str, Beam)>, Error> {
-    let direction = beam.unit_direction();
-    let field = crate::vector::unit(bias.field_direction, "field_direction")?;
-    let across = crate::vector::cross(direction, field);
-    let mut all = Vec::new();
-    // Along the field there is no preferred transverse direction: any will do.
-    if let Ok(upright) = polarisation::linear(direction, field) {
-        all.push(("linear in the plane of beam and field", beam.with_polarisation(upright)?));
-        if let Ok(flat) = polarisation::linear(direction, across) {
-            all.push(("linear across the field", beam.with_polarisation(flat)?));
-        }
-    }
-    for (name, helicity) in
-        [("circular, helicity +1", Helicity::Plus), ("circular, helicity -1", Helicity::Minus)]
-    {
-        all.push((name, beam.with_polarisation(polarisation::circular(direction, helicity)?)?));
-    }
-    Ok(all)
 }
 
 fn percent(part: f64) -> String {
@@ -298,8 +257,4 @@ fn percent(part: f64) -> String {
     } else {
         format!("{:.1e}", part)
     }
-}
-
-fn hertz(size: f64) -> String {
-    if size >= 1e3 { format!("{:.3} kHz", size * 1e-3) } else { format!("{size:.3} Hz") }
 }

@@ -31,11 +31,13 @@
 //! # Ok::<(), fluxloom_core::Error>(())
 //! ```
 
+mod alternatives;
 mod beam;
 mod bias;
 mod coupling;
 pub(crate) mod polarisability;
 pub mod polarisation;
+mod products;
 mod quality;
 mod radio;
 mod raman;

@@ -21,6 +21,7 @@
 
 use num_complex::Complex64;
 
+use super::products::{ByRank, Products};
 use crate::atom::Structure;
 use crate::constants::{
     BOHR_RADIUS_M, ELEMENTARY_CHARGE_C, HARTREE_J, PLANCK_J_S, SPEED_OF_LIGHT_M_PER_S,
@@ -39,12 +40,15 @@ pub(crate) const POLARISABILITY_UNIT_SI: f64 =
 pub(crate) const HZ_PER_AU_INTENSITY: f64 = POLARISABILITY_UNIT_SI
     / (2.0 * VACUUM_PERMITTIVITY_F_PER_M * SPEED_OF_LIGHT_M_PER_S * PLANCK_J_S);
 
-/// Scalar, vector and tensor part.
-pub(crate) type ByRank<T> = [T; 3];
-
 /// Vacuum wavelength of a frequency, nm.
 pub(crate) fn wavelength_nm(frequency_hz: f64) -> f64 {
     SPEED_OF_LIGHT_M_PER_S / frequency_hz * 1e9
+}
+
+/// Zero-field energy of a ground level, Hz.
+fn energy_hz(structure: &Structure, level: usize) -> f64 {
+    let twice_f = structure.manifold().twice_f.get(level);
+    twice_f.map_or(0.0, |twice_f| structure.ground_hz(*twice_f))
 }
 
 /// Reduced elements by rank from one ground level to another, for the optical
@@ -55,11 +59,17 @@ pub(crate) fn reduced(
     from: usize,
     frequency_hz: f64,
 ) -> Result<ByRank<f64>, Error> {
-    let manifold = structure.manifold();
-    let energy = |level: usize| {
-        manifold.twice_f.get(level).map_or(0.0, |twice_f| structure.ground_hz(*twice_f))
-    };
-    let mean = 0.5 * (energy(to) + energy(from));
+    let mean_hz = 0.5 * (energy_hz(structure, to) + energy_hz(structure, from));
+    reduced_about(structure, (to, from), mean_hz, frequency_hz)
+}
+
+/// As [`reduced`], with the mean energy of the states that the light acts on.
+fn reduced_about(
+    structure: &Structure,
+    (to, from): (usize, usize),
+    mean: f64,
+    frequency_hz: f64,
+) -> Result<ByRank<f64>, Error> {
     let mut sums = [0.0; 3];
     for (line, dipoles) in structure.lines.iter().zip(&structure.dipoles.lines) {
         let strength = line.dipole_au * line.dipole_au * HARTREE_HZ;
@@ -127,57 +137,6 @@ pub(crate) fn nearest_line_hz(structure: &Structure, level: usize, frequency_hz:
     nearest
 }
 
-/// Spherical components of a vector: `[-1, 0, +1]`, `A_(+-1) = -+(A_x +- i A_y)/sqrt 2`.
-fn spherical([x, y, z]: [Complex64; 3]) -> [Complex64; 3] {
-    let half = std::f64::consts::FRAC_1_SQRT_2;
-    let iy = Complex64::i() * y;
-    [(x - iy) * half, z, -(x + iy) * half]
-}
-
-/// The products of two vectors by rank: `[x (x) y]^K_q`.
-#[derive(Debug, Clone, Copy)]
-pub(crate) struct Products {
-    scalar: Complex64,
-    vector: [Complex64; 3],
-    tensor: [Complex64; 5],
-}
-
-impl Products {
-    /// Of the emitted (already conjugated) and the absorbed polarisation, in the axes of the field.
-    pub fn new(emitted_conjugate: [Complex64; 3], absorbed: [Complex64; 3]) -> Self {
-        let [xm, x0, xp] = spherical(emitted_conjugate);
-        let [ym, y0, yp] = spherical(absorbed);
-        let half = std::f64::consts::FRAC_1_SQRT_2;
-        Self {
-            scalar: (xp * ym - x0 * y0 + xm * yp) / 3.0_f64.sqrt(),
-            vector: [
-                (x0 * ym - xm * y0) * half,
-                (xp * ym - xm * yp) * half,
-                (xp * y0 - x0 * yp) * half,
-            ],
-            tensor: [
-                xm * ym,
-                (xm * y0 + x0 * ym) * half,
-                (xp * ym + x0 * y0 * 2.0 + xm * yp) / 6.0_f64.sqrt(),
-                (xp * y0 + x0 * yp) * half,
-                xp * yp,
-            ],
-        }
-    }
-
-    /// The component -q of each rank.
-    pub fn opposite(&self, q: i32) -> ByRank<Complex64> {
-        let pick = |list: &[Complex64], largest: i32| {
-            usize::try_from(largest - q).ok().and_then(|place| list.get(place)).copied()
-        };
-        [
-            if q == 0 { self.scalar } else { Complex64::ZERO },
-            pick(&self.vector, 1).unwrap_or_default(),
-            pick(&self.tensor, 2).unwrap_or_default(),
-        ]
-    }
-}
-
 /// The operator v between zero-field states, by rank.
 pub(crate) struct Operator<'a> {
     structure: &'a Structure,
@@ -225,37 +184,51 @@ impl<'a> Operator<'a> {
         if let Some(Some(known)) = self.known.get(slot) {
             return Ok(*known);
         }
-        let mut frequency_hz = self.frequency_hz;
-        if self.scattering {
-            let energy = |level: usize| {
-                let twice_f = self.structure.manifold().twice_f.get(level);
-                twice_f.map_or(0.0, |twice_f| self.structure.ground_hz(*twice_f))
-            };
-            frequency_hz += 0.5 * (energy(from) - energy(to));
-        }
-        let found = reduced(self.structure, to, from, frequency_hz)?;
+        let found = self.reduced_as((to, from), (to, from))?;
         if let Some(place) = self.known.get_mut(slot) {
             *place = Some(found);
         }
         Ok(found)
     }
 
+    /// The reduced elements between two levels with the energies of two others.
+    fn reduced_as(
+        &self,
+        (to, from): (usize, usize),
+        energies: (usize, usize),
+    ) -> Result<ByRank<f64>, Error> {
+        let to_hz = energy_hz(self.structure, energies.0);
+        let from_hz = energy_hz(self.structure, energies.1);
+        // A free photon makes up the difference of the levels.
+        let apart = if self.scattering { 0.5 * (from_hz - to_hz) } else { 0.0 };
+        let mean = 0.5 * (to_hz + from_hz);
+        reduced_about(self.structure, (to, from), mean, self.frequency_hz + apart)
+    }
+
     /// `v_ba` between zero-field states at two places, by rank, atomic units.
     pub fn at_rest(&mut self, to: usize, from: usize) -> Result<ByRank<Complex64>, Error> {
-        let manifold = self.structure.manifold();
-        let (Some(b), Some(a)) = (manifold.states.get(to), manifold.states.get(from)) else {
-            return Ok(Default::default());
+        let levels = self.levels(to, from);
+        let reduced = match levels {
+            Some((to, from)) => self.reduced(to, from)?,
+            None => return Ok(Default::default()),
         };
-        let (Some(level_b), Some(level_a)) =
-            (manifold.level_of(b.twice_f()), manifold.level_of(a.twice_f()))
-        else {
-            return Ok(Default::default());
+        Ok(self.element((to, from), reduced))
+    }
+
+    /// The ground levels of two places, if anything connects them.
+    fn levels(&self, to: usize, from: usize) -> Option<(usize, usize)> {
+        let manifold = self.structure.manifold();
+        let level = |place: usize| manifold.level_of(manifold.states.get(place)?.twice_f());
+        let connected = to == from || self.structure.dipoles.angular(to, from) != [0.0; 3];
+        if connected { Some((level(to)?, level(from)?)) } else { None }
+    }
+
+    fn element(&self, (to, from): (usize, usize), reduced: ByRank<f64>) -> ByRank<Complex64> {
+        let states = &self.structure.manifold().states;
+        let (Some(b), Some(a)) = (states.get(to), states.get(from)) else {
+            return Default::default();
         };
         let angular = self.structure.dipoles.angular(to, from);
-        if to != from && angular == [0.0; 3] {
-            return Ok(Default::default());
-        }
-        let reduced = self.reduced(level_b, level_a)?;
         let products = self.products.opposite((b.twice_m() - a.twice_m()) / 2);
         let mut ranks = [Complex64::ZERO; 3];
         for (((rank, product), weight), size) in
@@ -268,27 +241,60 @@ impl<'a> Operator<'a> {
         {
             *scalar += self.overlap * self.structure.residual_au;
         }
-        Ok(ranks)
+        ranks
     }
 
     /// `v_ba` between states of the field, each given by its zero-field parts.
     pub fn between(
         &mut self,
-        to: impl Iterator<Item = (usize, f64)>,
+        to: impl Iterator<Item = (usize, f64)> + Clone,
         from: impl Iterator<Item = (usize, f64)> + Clone,
     ) -> Result<ByRank<Complex64>, Error> {
+        let main = |parts: &mut dyn Iterator<Item = (usize, f64)>| {
+            parts.max_by(|x, y| x.1.abs().total_cmp(&y.1.abs())).map_or(0, |(place, _)| place)
+        };
+        let mains = (main(&mut to.clone()), main(&mut from.clone()));
         let mut sum = [Complex64::ZERO; 3];
         for (b, amplitude_b) in to {
             for (a, amplitude_a) in from.clone() {
-                let part = self.at_rest(b, a)?;
+                let weight = amplitude_b * amplitude_a;
+                let part = match self.at_rest(b, a) {
+                    // A small admixture has the energy of its state, not of the
+                    // level it comes from: it is not on that level's line.
+                    Err(Error::OnResonance { .. })
+                        if (b, a) != mains && weight.abs() < SMALL_ADMIXTURE =>
+                    {
+                        self.admixed((b, a), mains)?
+                    }
+                    other => other?,
+                };
                 for (total, one) in sum.iter_mut().zip(part) {
-                    *total += one * (amplitude_b * amplitude_a);
+                    *total += one * weight;
                 }
             }
         }
         Ok(sum)
     }
+
+    /// An element of a small admixture, with the energies of the states' main parts.
+    fn admixed(
+        &self,
+        places: (usize, usize),
+        mains: (usize, usize),
+    ) -> Result<ByRank<Complex64>, Error> {
+        let manifold = self.structure.manifold();
+        let level = |place: usize| {
+            let state = manifold.states.get(place);
+            state.and_then(|state| manifold.level_of(state.twice_f())).unwrap_or_default()
+        };
+        let levels = (level(places.0), level(places.1));
+        let reduced = self.reduced_as(levels, (level(mains.0), level(mains.1)))?;
+        Ok(self.element(places, reduced))
+    }
 }
+
+/// Products of amplitudes below this count as small admixtures by the field.
+const SMALL_ADMIXTURE: f64 = 0.1;
 
 #[cfg(test)]
 mod tests {
@@ -324,25 +330,5 @@ mod tests {
         assert!((up.re + 4_405.449_713).abs() < 1e-5, "{up}");
         assert!((down.re - 4_404.959_022).abs() < 1e-5, "{down}");
         assert!(up.im.abs() + down.im.abs() < 1e-9);
-    }
-
-    #[test]
-    fn products_of_vectors_are_products_of_vectors() {
-        let x = [Complex64::new(0.3, -0.2), Complex64::new(0.1, 0.7), Complex64::new(-0.4, 0.5)];
-        let y = [Complex64::new(-0.6, 0.1), Complex64::new(0.2, 0.2), Complex64::new(0.9, -0.3)];
-        let products = Products::new(x, y);
-        let dot: Complex64 = x.iter().zip(&y).map(|(a, b)| a * b).sum();
-        assert!((products.scalar + dot / 3.0_f64.sqrt()).norm() < 1e-15);
-        // [x (x) y]^1_0 = (i/sqrt 2)(x cross y)_z (Edmonds, from memory)
-        let cross_z = x[0] * y[1] - x[1] * y[0];
-        let expected = Complex64::i() * cross_z * std::f64::consts::FRAC_1_SQRT_2;
-        assert!((products.vector[1] - expected).norm() < 1e-15);
-        // Norms add up to that of the dyad.
-        let total: f64 = products.scalar.norm_sqr()
-            + products.vector.iter().map(Complex64::norm_sqr).sum::<f64>()
-            + products.tensor.iter().map(Complex64::norm_sqr).sum::<f64>();
-        let sizes: f64 = x.iter().map(Complex64::norm_sqr).sum::<f64>()
-            * y.iter().map(Complex64::norm_sqr).sum::<f64>();
-        assert!((total - sizes).abs() < 1e-14);
     }
 }

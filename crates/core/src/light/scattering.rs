@@ -24,14 +24,14 @@ use super::bias::Bias;
 use super::response::{Operator, POLARISABILITY_UNIT_SI, wavelength_nm};
 use super::shift::{Illumination, excited_zeeman};
 use crate::Atom;
-use crate::atom::{Levels, State, Structure, Uncertain, standard_errors};
+use crate::atom::{Levels, State, Structure, Uncertain, standard_errors_of_all};
 use crate::constants::{REDUCED_PLANCK_J_S, SPEED_OF_LIGHT_M_PER_S, VACUUM_PERMITTIVITY_F_PER_M};
 use crate::documents::Document;
 use crate::error::Error;
 
 /// Scattering rates of one state.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(try_from = "RawScattering")]
 pub struct Scattering {
     /// The atom, whose numbers stand behind the result.
     pub atom: Atom,
@@ -51,6 +51,48 @@ pub struct Scattering {
 
 impl Document for Scattering {
     const FORMAT: &'static str = "fluxloom-scattering";
+}
+
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawScattering {
+    atom: Atom,
+    from: State,
+    total: f64,
+    rayleigh: f64,
+    raman: f64,
+    to: Vec<(State, f64)>,
+    heating_hz_per_s: f64,
+}
+
+impl TryFrom<RawScattering> for Scattering {
+    type Error = Error;
+
+    fn try_from(raw: RawScattering) -> Result<Self, Error> {
+        let manifold = raw.atom.manifold();
+        manifold.find(raw.atom.name(), raw.from)?;
+        let states: Vec<State> = raw.to.iter().map(|(state, _)| *state).collect();
+        let sums = [raw.total, raw.rayleigh, raw.raman, raw.heating_hz_per_s];
+        let rates = raw.to.iter().map(|(_, rate)| *rate).chain(sums);
+        if states != manifold.states || rates.into_iter().any(|rate| rate < 0.0) {
+            return Err(Error::Contradiction {
+                code: "scattering.not_rates",
+                message: format!(
+                    "the rates are not one for each state of {} in order, none negative",
+                    raw.atom.name()
+                ),
+            });
+        }
+        Ok(Self {
+            atom: raw.atom,
+            from: raw.from,
+            total: raw.total,
+            rayleigh: raw.rayleigh,
+            raman: raw.raman,
+            to: raw.to,
+            heating_hz_per_s: raw.heating_hz_per_s,
+        })
+    }
 }
 
 impl Scattering {
@@ -167,31 +209,30 @@ impl Atom {
         let structure = self.structure();
         let neglected = lights
             .iter()
-            .map(|light| 2.0 * excited_zeeman(&structure, light, bias.field_gauss))
+            .map(|light| {
+                let main = std::iter::once(place);
+                2.0 * excited_zeeman(&structure, main, light.frequency_hz, bias.field_gauss)
+            })
             .fold(0.0, f64::max);
-        // One final state at a time, and then the sums, which are correlated.
-        let with = |structure: &Structure| -> Result<Vec<f64>, Error> {
+        // The sums are correlated with their parts, so they stand beside them.
+        let found = standard_errors_of_all(self, |structure| {
             let levels = Levels::new(structure, bias.field_gauss);
-            let mut sum = vec![0.0; errors.to.len()];
+            let mut to = vec![0.0; value.to.len()];
             for light in &lights {
                 let one = rates(structure, &levels, place, light)?;
-                sum.iter_mut().zip(one.to).for_each(|(total, rate)| *total += rate);
+                to.iter_mut().zip(one.to).for_each(|(sum, rate)| *sum += rate);
             }
-            Ok(sum)
-        };
-        let [total, rayleigh, raman] = standard_errors(self, |structure| {
-            let to = with(structure)?;
             let total: f64 = to.iter().sum();
             let kept = to.get(place).copied().unwrap_or_default();
-            Ok([total, kept, total - kept])
+            Ok([total, kept, total - kept].into_iter().chain(to).collect())
         })?;
-        let mut by_state = Vec::with_capacity(value.to.len());
-        for (index, (state, rate)) in value.to.iter().enumerate() {
-            let [error] = standard_errors(self, |structure| {
-                Ok([with(structure)?.get(index).copied().unwrap_or_default()])
-            })?;
-            by_state.push((*state, error.hypot(neglected * rate)));
-        }
+        let (sums, parts) = found.split_at(found.len().min(3));
+        let [total, rayleigh, raman] = sums else {
+            return Ok(Uncertain { value, standard_error: errors });
+        };
+        let by_state = value.to.iter().zip(parts);
+        errors.to =
+            by_state.map(|((state, rate), part)| (*state, part.hypot(neglected * rate))).collect();
         errors.total = total.hypot(neglected * value.total);
         errors.rayleigh = rayleigh.hypot(neglected * value.rayleigh);
         errors.raman = raman.hypot(neglected * value.raman);
@@ -200,7 +241,6 @@ impl Atom {
         } else {
             0.0
         };
-        errors.to = by_state;
         Ok(Uncertain { value, standard_error: errors })
     }
 }

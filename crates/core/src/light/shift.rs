@@ -38,13 +38,24 @@ impl Illumination {
 /// (common practice). They are neglected, and enter standard errors.
 const EXCITED_ZEEMAN_HZ_PER_GAUSS: f64 = 1.4e6;
 
-/// Relative size of what is neglected with the excited Zeeman shift.
-pub(crate) fn excited_zeeman(structure: &Structure, light: &Illumination, field_gauss: f64) -> f64 {
-    let levels = 0..structure.manifold().twice_f.len();
+/// Relative size of what is neglected with the excited Zeeman shift, for light
+/// on states that are made of the zero-field states at `places`.
+pub(crate) fn excited_zeeman(
+    structure: &Structure,
+    places: impl Iterator<Item = usize>,
+    frequency_hz: f64,
+    field_gauss: f64,
+) -> f64 {
+    if field_gauss == 0.0 {
+        return 0.0;
+    }
+    let manifold = structure.manifold();
+    let levels =
+        places.filter_map(|place| manifold.level_of(manifold.states.get(place)?.twice_f()));
     let nearest = levels
-        .map(|level| nearest_line_hz(structure, level, light.frequency_hz))
+        .map(|level| nearest_line_hz(structure, level, frequency_hz))
         .fold(f64::INFINITY, f64::min);
-    EXCITED_ZEEMAN_HZ_PER_GAUSS * field_gauss / nearest
+    EXCITED_ZEEMAN_HZ_PER_GAUSS * field_gauss / nearest.max(EXCITED_ZEEMAN_HZ_PER_GAUSS)
 }
 
 /// Shift of the state at a place, Hz.
@@ -98,7 +109,9 @@ impl Atom {
         let mut neglected = 0.0;
         for light in &lights {
             let one = shift_hz(&structure, &levels, place, light)?;
-            neglected += (one * excited_zeeman(&structure, light, bias.field_gauss)).abs();
+            let main = std::iter::once(place);
+            let part = excited_zeeman(&structure, main, light.frequency_hz, bias.field_gauss);
+            neglected += (one * part).abs();
         }
         Ok(Uncertain { value, standard_error: from_data.hypot(neglected) })
     }

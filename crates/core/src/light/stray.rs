@@ -14,10 +14,11 @@ use crate::Atom;
 use crate::atom::State;
 use crate::documents::Document;
 use crate::error::Error;
+use crate::limits::POWER_FRACTION;
 
 /// A coupling that nobody asked for.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
+#[serde(try_from = "RawStray")]
 pub struct StrayCoupling {
     /// The atom, whose numbers stand behind the result.
     pub atom: Atom,
@@ -36,6 +37,26 @@ impl Document for StrayCoupling {
     const FORMAT: &'static str = "fluxloom-stray-coupling";
 }
 
+#[derive(Deserialize)]
+#[serde(deny_unknown_fields)]
+struct RawStray {
+    atom: Atom,
+    absorb: String,
+    emit: String,
+    rabi_hz: Complex64,
+    pair: RamanPair,
+}
+
+impl TryFrom<RawStray> for StrayCoupling {
+    type Error = Error;
+
+    fn try_from(raw: RawStray) -> Result<Self, Error> {
+        raw.pair.beams()?;
+        let RawStray { atom, absorb, emit, rabi_hz, pair } = raw;
+        Ok(Self { atom, absorb, emit, rabi_hz, pair })
+    }
+}
+
 impl RamanPair {
     /// Every other way in which the beams and their reflections drive b <- a,
     /// strongest first. `reflection` is the power that comes straight back.
@@ -49,6 +70,7 @@ impl RamanPair {
         bias: &Bias,
         reflection: f64,
     ) -> Result<Vec<StrayCoupling>, Error> {
+        POWER_FRACTION.check_as(reflection, "reflection")?;
         let [absorb, emit] = self.beams()?;
         let straight = [("absorb", absorb), ("emit", emit)];
         let reflected = [

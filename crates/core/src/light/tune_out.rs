@@ -167,16 +167,25 @@ fn pieces(structure: &Structure, level: usize, (low, high): (f64, f64)) -> Vec<(
 }
 
 /// The refused windows about the lines of a level, Hz, ascending.
-pub(crate) fn windows(structure: &Structure, level: usize) -> Vec<(f64, f64)> {
-    let twice_f = structure.manifold().twice_f.get(level).copied().unwrap_or_default();
-    let ground = structure.ground_hz(twice_f);
+fn windows(structure: &Structure, level: usize) -> Vec<(f64, f64)> {
+    windows_between(structure, level, level)
+}
+
+/// The refused windows for light between two ground levels, Hz, ascending: lines
+/// count from the mean of both.
+pub(crate) fn windows_between(structure: &Structure, to: usize, from: usize) -> Vec<(f64, f64)> {
+    let energy = |level: usize| {
+        let twice_f = structure.manifold().twice_f.get(level);
+        twice_f.map_or(0.0, |twice_f| structure.ground_hz(*twice_f))
+    };
+    let mean = 0.5 * (energy(to) + energy(from));
     let mut windows = Vec::new();
     for (line, dipoles) in structure.lines.iter().zip(&structure.dipoles.lines) {
         // A little wider than what is refused, so that rounding cannot matter.
         let half = RESONANCE_LINEWIDTHS * line.linewidth_hz * (1.0 + 1e-6) + 1.0;
         for excited in &dipoles.levels {
-            if excited.recoupled(level, level) != [0.0; 3] {
-                let centre = line.frequency_hz + line.hyperfine.shift_hz(excited.twice_f) - ground;
+            if excited.recoupled(to, from) != [0.0; 3] {
+                let centre = line.frequency_hz + line.hyperfine.shift_hz(excited.twice_f) - mean;
                 windows.push((centre - half, centre + half));
             }
         }

@@ -17,7 +17,8 @@ use num_complex::Complex64;
 
 use super::RamanPair;
 use super::bias::Bias;
-use super::response::{ByRank, HZ_PER_AU_INTENSITY, Operator};
+use super::products::ByRank;
+use super::response::{HZ_PER_AU_INTENSITY, Operator};
 use super::shift::{Illumination, excited_zeeman};
 use crate::Atom;
 use crate::atom::{Levels, State, Structure, standard_errors};
@@ -110,7 +111,8 @@ impl RamanPair {
             Ok([sum.re, sum.im])
         })?;
         let [re, im] = errors;
-        let neglected = excited_zeeman(&atom.structure(), &light.absorb, bias.field_gauss);
+        let main = [places.0, places.1].into_iter();
+        let neglected = excited_zeeman(&atom.structure(), main, light.mean_hz(), bias.field_gauss);
         Ok((value, re.hypot(im).hypot(neglected * value.norm())))
     }
 
@@ -135,8 +137,9 @@ impl RamanPair {
     }
 
     /// This pair with the tones that drive b <- a on resonance: their frequencies
-    /// differ by exactly the splitting, about the mean of today's. What differs
-    /// by gigahertz differs in its wave vectors, and so does the kick.
+    /// differ by the splitting, about the mean of today's, as well as wavelengths
+    /// can say it (some 10 mHz); light shifts are not included. What differs by
+    /// gigahertz differs in its wave vectors, and so does the kick.
     ///
     /// # Errors
     /// As [`RamanPair::rabi_hz`].
