@@ -13,7 +13,7 @@
 
 use serde::{Deserialize, Serialize};
 
-use super::response::reduced;
+use super::response::{Transition, energy_hz, reduced, reduced_by, transitions};
 use crate::atom::{Structure, Uncertain, standard_errors};
 use crate::constants::SPEED_OF_LIGHT_M_PER_S;
 use crate::documents::Document;
@@ -110,7 +110,13 @@ impl Atom {
     ) -> Result<Vec<Polarisability>, Error> {
         let level = self.manifold().find_level(self.name(), f)?;
         let structure = self.structure();
-        let one = |nm: &f64| polarisability(&structure, level, frequency_of(*nm)?);
+        let twice_f = structure.manifold().twice_f.get(level).copied().unwrap_or_default();
+        let at_rest = energy_hz(&structure, level);
+        let known: Vec<Transition<'_>> = transitions(&structure, (level, level), at_rest).collect();
+        let one = |nm: &f64| {
+            let ranks = reduced_by(&structure, known.iter().copied(), frequency_of(*nm)?)?;
+            Ok(Polarisability::from_ranks(twice_f, ranks, structure.residual_au))
+        };
         wavelengths_nm.iter().map(one).collect()
     }
 

@@ -8,8 +8,7 @@
 use serde::{Deserialize, Serialize};
 
 use super::bias::Bias;
-use super::response::wavelength_nm;
-use super::tune_out::windows_between;
+use super::response::{wavelength_nm, windows};
 use super::{Beam, RamanPair};
 use crate::Atom;
 use crate::atom::State;
@@ -202,7 +201,7 @@ impl RamanPair {
             // The coupling goes by the mean of both beams.
             (to, from, [0.5 * apart_hz; 2]),
         ] {
-            for (start, end) in windows_between(&structure, one, two) {
+            for (start, end) in windows(&structure, one, two) {
                 for offset in offsets {
                     all.push((wavelength_nm(end - offset), wavelength_nm(start - offset)));
                 }

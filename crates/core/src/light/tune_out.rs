@@ -6,10 +6,10 @@
 //! are not looked for.
 
 use super::polarisability::{Polarisability, frequency_of, polarisability};
-use super::response::wavelength_nm;
+use super::response::{wavelength_nm, windows};
 use crate::Atom;
 use crate::atom::{State, Structure, Uncertain, halves_text, standard_errors};
-use crate::error::{Error, RESONANCE_LINEWIDTHS};
+use crate::error::Error;
 use crate::limits::{CIRCULARITY, WAVELENGTH_NM};
 
 /// What is to vanish.
@@ -150,7 +150,7 @@ impl Atom {
 
 /// The parts of a range of frequencies that keep clear of the lines of a level.
 fn pieces(structure: &Structure, level: usize, (low, high): (f64, f64)) -> Vec<(f64, f64)> {
-    let windows = windows(structure, level);
+    let windows = windows(structure, level, level);
     let mut pieces = Vec::new();
     let mut from = low;
     for (start, end) in windows.into_iter().filter(|(start, _)| *start < high) {
@@ -164,34 +164,6 @@ fn pieces(structure: &Structure, level: usize, (low, high): (f64, f64)) -> Vec<(
     }
     pieces.retain(|(from, to)| from < to);
     pieces
-}
-
-/// The refused windows about the lines of a level, Hz, ascending.
-fn windows(structure: &Structure, level: usize) -> Vec<(f64, f64)> {
-    windows_between(structure, level, level)
-}
-
-/// The refused windows for light between two ground levels, Hz, ascending: lines
-/// count from the mean of both.
-pub(crate) fn windows_between(structure: &Structure, to: usize, from: usize) -> Vec<(f64, f64)> {
-    let energy = |level: usize| {
-        let twice_f = structure.manifold().twice_f.get(level);
-        twice_f.map_or(0.0, |twice_f| structure.ground_hz(*twice_f))
-    };
-    let mean = 0.5 * (energy(to) + energy(from));
-    let mut windows = Vec::new();
-    for (line, dipoles) in structure.lines.iter().zip(&structure.dipoles.lines) {
-        // A little wider than what is refused, so that rounding cannot matter.
-        let half = RESONANCE_LINEWIDTHS * line.linewidth_hz * (1.0 + 1e-6) + 1.0;
-        for excited in &dipoles.levels {
-            if excited.recoupled(to, from) != [0.0; 3] {
-                let centre = line.frequency_hz + line.hyperfine.shift_hz(excited.twice_f) - mean;
-                windows.push((centre - half, centre + half));
-            }
-        }
-    }
-    windows.sort_by(|a, b| a.0.total_cmp(&b.0));
-    windows
 }
 
 fn zeros(
