@@ -55,7 +55,7 @@ $(VENV)/ready:
 	$(BIN)/python -c "open('$(VENV)/ready', 'w').close()"
 
 $(VENV)/tools: $(VENV)/ready pyproject.toml
-	$(BIN)/python -m pip install --quiet "pandas>=2.0" "xarray>=2024.1" "hypothesis>=6.100" "mypy>=1.11" "pytest>=8" "mpmath>=1.3" "ruff>=0.9" "scipy>=1.17" "sympy>=1.13"
+	$(BIN)/python -m pip install --quiet "pandas>=2.0" "xarray>=2024.1" "hypothesis>=6.100" "ipykernel>=6.29" "mpmath>=1.3" "mypy>=1.11" "nbclient>=0.10" "pytest>=8" "ruff>=0.9" "scipy>=1.17" "sympy>=1.13"
 	$(BIN)/python -c "open('$(VENV)/tools', 'w').close()"
 
 # Speed, in one run each; nothing else should run meanwhile.
@@ -64,6 +64,7 @@ bench:
 
 bench-peers: wheel $(VENV)/tools
 	$(BIN)/python benches/bands_against_numpy.py
+	$(BIN)/python benches/light_against_numpy.py
 
 # Makes the outside data of the Rust tests anew.
 reference: $(VENV)/tools
