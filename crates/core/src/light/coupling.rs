@@ -225,11 +225,12 @@ impl RamanPair {
             _ => return Ok(format!("Delta m = {step:+}: two photons change m by 2 at most")),
         };
         let total: f64 = coupling.ranks.iter().map(|part| part.norm()).sum();
-        if total > 0.0 {
+        // The shares of what is zero but for rounding say nothing.
+        if coupling.relative > ROUNDING {
             let [scalar, vector, tensor] = coupling.ranks.map(|part| percent(part.norm() / total));
             rule += &format!("; scalar {scalar}, vector {vector}, tensor {tensor}");
         }
-        let size = if coupling.relative == 0.0 {
+        let size = if coupling.relative <= ROUNDING {
             "0".to_owned()
         } else {
             format!("{:.2e}", coupling.relative)
