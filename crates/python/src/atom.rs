@@ -277,3 +277,24 @@ impl PySourceTable {
         format!("<SourceTable of {} numbers>", self.rows.len())
     }
 }
+
+/// Adds the atom and the numbers behind it to a result whose `inner` has an atom.
+macro_rules! rests_on {
+    ($class:ident) => {
+        #[pymethods]
+        impl $class {
+            /// The atom.
+            #[getter]
+            fn atom(&self) -> $crate::atom::PyAtom {
+                $crate::atom::PyAtom { inner: self.inner.atom.clone() }
+            }
+
+            /// The numbers behind the result.
+            #[getter]
+            fn sources(&self) -> $crate::atom::PySourceTable {
+                self.atom().sources()
+            }
+        }
+    };
+}
+pub(crate) use rests_on;

@@ -5,7 +5,7 @@ use numpy::Complex64;
 use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 
-use crate::atom::{PyAtom, PySourceTable};
+use crate::atom::rests_on;
 use crate::convert::shaped;
 use crate::documents::document;
 use crate::raman::PyRamanPair;
@@ -19,21 +19,10 @@ pub struct PyCoupling {
 }
 
 document!(PyCoupling);
+rests_on!(PyCoupling);
 
 #[pymethods]
 impl PyCoupling {
-    /// The atom.
-    #[getter]
-    fn atom(&self) -> PyAtom {
-        PyAtom { inner: self.inner.atom.clone() }
-    }
-
-    /// The numbers behind the result.
-    #[getter]
-    fn sources(&self) -> PySourceTable {
-        self.atom().sources()
-    }
-
     /// The state a.
     #[getter]
     fn a<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
@@ -176,21 +165,10 @@ pub struct PyStrayCoupling {
 }
 
 document!(PyStrayCoupling);
+rests_on!(PyStrayCoupling);
 
 #[pymethods]
 impl PyStrayCoupling {
-    /// The atom.
-    #[getter]
-    fn atom(&self) -> PyAtom {
-        PyAtom { inner: self.inner.atom.clone() }
-    }
-
-    /// The numbers behind the result.
-    #[getter]
-    fn sources(&self) -> PySourceTable {
-        self.atom().sources()
-    }
-
     /// Where the photon is absorbed from: ``"absorb"``, ``"emit"``, or one of
     /// them, reflected.
     #[getter]
@@ -231,21 +209,10 @@ pub struct PyQuality {
 }
 
 document!(PyQuality);
+rests_on!(PyQuality);
 
 #[pymethods]
 impl PyQuality {
-    /// The atom.
-    #[getter]
-    fn atom(&self) -> PyAtom {
-        PyAtom { inner: self.inner.atom.clone() }
-    }
-
-    /// The numbers behind the result.
-    #[getter]
-    fn sources(&self) -> PySourceTable {
-        self.atom().sources()
-    }
-
     /// Vacuum wavelengths, ascending; those too near to a line are left out.
     #[getter]
     fn wavelengths_nm<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {

@@ -5,7 +5,7 @@ use fluxloom_core::light::Scattering;
 use pyo3::prelude::*;
 use pyo3::types::PyDict;
 
-use crate::atom::{PyAtom, PySourceTable};
+use crate::atom::{PyAtom, rests_on};
 use crate::convert::number;
 use crate::documents::document;
 use crate::enter;
@@ -21,21 +21,10 @@ pub struct PyScattering {
 }
 
 document!(PyScattering);
+rests_on!(PyScattering);
 
 #[pymethods]
 impl PyScattering {
-    /// The atom.
-    #[getter]
-    fn atom(&self) -> PyAtom {
-        PyAtom { inner: self.inner.atom.clone() }
-    }
-
-    /// The numbers behind the result.
-    #[getter]
-    fn sources(&self) -> PySourceTable {
-        self.atom().sources()
-    }
-
     /// The state that scatters.
     #[getter]
     fn state<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {

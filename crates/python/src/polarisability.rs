@@ -8,7 +8,7 @@ use pyo3::prelude::*;
 use pyo3::types::PyTuple;
 use serde::{Deserialize, Serialize};
 
-use crate::atom::{PyAtom, PySourceTable};
+use crate::atom::{PyAtom, rests_on};
 use crate::convert::{Numbers, number, numbers, pair, shaped};
 use crate::documents::document;
 use crate::enter;
@@ -76,21 +76,10 @@ pub struct PyPolarisability {
 }
 
 document!(PyPolarisability);
+rests_on!(PyPolarisability);
 
 #[pymethods]
 impl PyPolarisability {
-    /// The atom.
-    #[getter]
-    fn atom(&self) -> PyAtom {
-        PyAtom { inner: self.inner.atom.clone() }
-    }
-
-    /// The numbers behind the result.
-    #[getter]
-    fn sources(&self) -> PySourceTable {
-        self.atom().sources()
-    }
-
     /// The scalar polarisability.
     #[getter]
     fn scalar<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyAny>> {
