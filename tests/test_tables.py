@@ -150,3 +150,23 @@ def test_without_pandas_the_extra_is_named(ask, monkeypatch: pytest.MonkeyPatch)
     monkeypatch.setitem(sys.modules, "pandas", None)
     with pytest.raises(ImportError, match=r'pandas: pip install "fluxloom\[tables\]"'):
         ask()
+
+
+def test_couplings_and_rates_as_html() -> None:
+    atom = fl.Atom("40K")
+    along = {"wavelength_nm": 769.0, "power_mw": 0.4, "waist_um": 200.0}
+    pair = fl.RamanPair.from_beams(
+        absorb=fl.Beam(direction=(0, 1, 0), polarisation=(0, 0, 1), **along),
+        emit=fl.Beam(direction=(1, 0, 0), polarisation=(0, 1, 0), **along),
+    )
+    lattice = fl.Lattice(wavelength_nm=1064.0, depth_er=6.0)
+    link = pair.coupling(atom, "9/2,-9/2", "9/2,-5/2", field_gauss=30.0, lattice=lattice)
+    page = Page(link._repr_html_())
+    assert page.words.startswith("40K: 9/2,-9/2 to 9/2,-5/2")
+    assert link.rule in page.words and all(text in page.words for text in link.alternatives)
+    assert [row[0] for row in page.rows][:2] == ["Rabi frequency, free atoms", "in the lattice"]
+    rates = atom.scattering_per_s(pair, 4.5, -4.5, field_gauss=30.0)
+    page = Page(rates._repr_html_())
+    assert page.words.startswith("40K in 9/2,-9/2")
+    assert ["all photons", f"{rates.total:.4e}"] in page.rows
+    assert len(page.rows) == 4 + sum(rate > 0 for rate in rates.to.values())

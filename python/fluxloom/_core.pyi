@@ -327,6 +327,7 @@ class Coupling(_Document["Coupling"]):
     forbidden: Final[bool]
     rule: Final[str]
     alternatives: Final[tuple[str, ...]]
+    def _repr_html_(self) -> str: ...
 
 @final
 class Ranks(_Value):
@@ -558,6 +559,7 @@ class GroundLevels(_Document["GroundLevels"]):
     def curvature_hz_per_gauss2(self, f: _Real, m: _Real) -> float: ...
     def vector(self, f: _Real, m: _Real) -> NDArray[np.float64]: ...
     def to_pandas(self) -> DataFrame: ...
+    def _repr_html_(self) -> str: ...
 
 @final
 class Polarisability(_Document["Polarisability"]):
@@ -581,6 +583,7 @@ class Scattering(_Document["Scattering"]):
     raman: Final[float]
     to: Final[Mapping[State, float]]
     heating_hz_per_s: Final[float]
+    def _repr_html_(self) -> str: ...
     def __float__(self) -> float: ...
 
 @final

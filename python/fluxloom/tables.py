@@ -2,13 +2,19 @@
 
 from typing import TYPE_CHECKING
 
-from fluxloom import GroundLevels, Quality
+from fluxloom import Coupling, GroundLevels, Quality, Scattering, State
 from fluxloom.displays import html_table
 
 if TYPE_CHECKING:
     import pandas
 
-__all__ = ["levels_html", "levels_to_pandas", "quality_to_pandas"]
+__all__ = [
+    "coupling_html",
+    "levels_html",
+    "levels_to_pandas",
+    "quality_to_pandas",
+    "scattering_html",
+]
 
 
 def _frame(columns: dict[str, object]) -> "pandas.DataFrame":
@@ -71,6 +77,52 @@ def levels_html(levels: GroundLevels) -> str:
     heads = ["F,m", "energy/h (MHz)", "slope (kHz/G)", "curvature (Hz/G²)"]
     title = f"{levels.atom.name} at {levels.field_gauss:g} G"
     return html_table(title, heads, rows, figures=(1, 2, 3))
+
+
+def coupling_html(coupling: Coupling) -> str:
+    """Lay out a coupling: its sizes, its parts by rank, the rule, the alternatives.
+
+    Parameters
+    ----------
+    coupling : Coupling
+
+    Returns
+    -------
+    str
+        HTML.
+    """
+    rows = [["Rabi frequency, free atoms", f"{abs(coupling.rabi_hz):,.3f} Hz"]]
+    if coupling.kick is not None:
+        size = f"{abs(coupling.effective_rabi_hz):,.3f} Hz, kick {coupling.kick:.6f} k_L"
+        rows.append(["in the lattice", size])
+    names = ("scalar part", "vector part", "tensor part")
+    rows += [[n, f"{abs(p):,.6f} Hz"] for n, p in zip(names, coupling.ranks, strict=True)]
+    rows.append(["rule", coupling.rule])
+    rows += [["instead", text] for text in coupling.alternatives]
+    a, b = State(*coupling.a), State(*coupling.b)
+    return html_table(f"{coupling.atom.name}: {a} to {b}", [], rows)
+
+
+def scattering_html(scattering: Scattering) -> str:
+    """Lay out scattering rates: the sums, then every final state that is reached.
+
+    Parameters
+    ----------
+    scattering : Scattering
+
+    Returns
+    -------
+    str
+        HTML.
+    """
+    rows = [
+        ["all photons", f"{scattering.total:.4e}"],
+        ["keep the state", f"{scattering.rayleigh:.4e}"],
+        ["change the state", f"{scattering.raman:.4e}"],
+    ]
+    rows += [[f"to {State(*s)}", f"{rate:.4e}"] for s, rate in scattering.to.items() if rate > 0]
+    title = f"{scattering.atom.name} in {State(*scattering.state)}"
+    return html_table(title, ["", "photons/s"], rows, figures=(1,))
 
 
 def quality_to_pandas(quality: Quality) -> "pandas.DataFrame":

@@ -1,9 +1,15 @@
 //! Public types may be sent to and shared between threads.
 
-use fluxloom_core::atom::{DataSource, Number};
+use fluxloom_core::angular::SpinMatrices;
+use fluxloom_core::atom::{
+    DataSource, GroundLevels, Manifold, Number, State, Structure, Uncertain,
+};
 use fluxloom_core::fault::Fault;
 use fluxloom_core::flux::Solution;
 use fluxloom_core::lattice::{Bands, LinkOverlaps, Wannier};
+use fluxloom_core::light::{
+    Bias, Coupling, Polarisability, Quality, Radio, Scattering, StrayCoupling, TuneOut,
+};
 use fluxloom_core::{Atom, Beam, Error, Flux, Fraction, Lattice, RamanPair, Sense};
 
 fn shared<T: Send + Sync>() -> usize {
@@ -28,6 +34,20 @@ fn public_types_cross_threads() {
         shared::<Sense>(),
         shared::<Fault>(),
         shared::<Error>(),
+        shared::<State>(),
+        shared::<Manifold>(),
+        shared::<Structure>(),
+        shared::<GroundLevels>(),
+        shared::<Uncertain<f64>>(),
+        shared::<SpinMatrices>(),
+        shared::<Bias>(),
+        shared::<Radio>(),
+        shared::<TuneOut>(),
+        shared::<Polarisability>(),
+        shared::<Coupling>(),
+        shared::<StrayCoupling>(),
+        shared::<Scattering>(),
+        shared::<Quality>(),
     ];
     assert!(sizes.iter().all(|size| *size > 0));
 }

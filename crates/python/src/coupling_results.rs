@@ -85,6 +85,10 @@ impl PyCoupling {
         PyTuple::new(py, &self.inner.alternatives)
     }
 
+    fn _repr_html_<'py>(slf: &Bound<'py, Self>) -> PyResult<Bound<'py, PyAny>> {
+        slf.py().import("fluxloom.tables")?.getattr("coupling_html")?.call1((slf,))
+    }
+
     fn __repr__(&self) -> String {
         let Coupling { from, to, rabi_hz, effective_rabi_hz, .. } = &self.inner;
         let size = rabi_hz.norm();

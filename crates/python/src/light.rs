@@ -70,6 +70,10 @@ impl PyScattering {
         self.inner.total
     }
 
+    fn _repr_html_<'py>(slf: &Bound<'py, Self>) -> PyResult<Bound<'py, PyAny>> {
+        slf.py().import("fluxloom.tables")?.getattr("scattering_html")?.call1((slf,))
+    }
+
     fn __repr__(&self) -> String {
         let Scattering { from, total, rayleigh, raman, .. } = &self.inner;
         format!(
