@@ -118,7 +118,9 @@ def test_a_report_is_a_document_and_warns_of_nothing(recwarn: pytest.WarningsRec
     assert fl.LinkReport.from_json(closing.to_json()) == closing
     leg = report.scattering_per_s[0]
     assert fl.LegReport.from_json(leg.to_json()) == leg
-    assert [caution.code for caution in report.cautions] == ["caution.unconfirmed_data"]
+    # The closing link has |Delta m| = 2.
+    codes = [caution.code for caution in report.cautions]
+    assert codes == ["caution.link_forbidden", "caution.unconfirmed_data"]
     assert set(report.unconfirmed_data) == {"D1.frequency_hz", "D2.frequency_hz", "g_j"}
     assert not recwarn.list
 
@@ -344,3 +346,71 @@ def test_light_on_a_resonance_is_a_line() -> None:
         "check", str(BAY), "--target", "3/8", "--set", "lasers.lattice.wavelength_nm=770.1083"
     )
     assert "depth from power left out: light at 770.1083 nm" in done.stdout
+
+
+# What may mislead.
+
+
+def test_a_cloud_that_starts_in_the_middle_has_legs_on_both_sides() -> None:
+    bay = fl.Apparatus.load(BAY).replace({"cloud.start": "7/2,1/2"})
+    report = bay.links(legs=8)
+    assert [str(leg.state) for leg in report.scattering_per_s][::7] == ["7/2,7/2", "7/2,-7/2"]
+    assert len(report.links) == 7 and not report.remarks
+
+
+def test_colours_that_no_modulator_brings_together_couple_nothing() -> None:
+    text = Path(BAY).read_text(encoding="utf-8")
+    text = text.replace(
+        '[beams.raman_b]\nlaser = "raman"', '[beams.raman_b]\nlaser = "other"'
+    ).replace("[beams.lattice]", "[lasers.other]\nwavelength_nm = 767.5\n\n[beams.lattice]", 1)
+    report = fl.Apparatus.from_toml(text).links()
+    assert all(link.rabi_hz is None for link in report.links)
+    (remark,) = report.remarks
+    # source: c/767.5 nm - c/769.0 nm = 761.9 GHz
+    assert "differ by 761.9 GHz" in remark
+    assert all(leg.raman_beams_per_s is not None for leg in report.scattering_per_s)
+
+
+def test_light_beyond_the_listed_lines_is_a_caution_and_no_fault() -> None:
+    bay = fl.Apparatus.load(BAY).replace(
+        {"beams.lattice.max_power_mw": 5000.0, "lasers.lattice.wavelength_nm": 421.0}
+    )
+    codes = [caution.code for caution in bay.links().cautions]
+    assert codes == ["caution.unlisted_lines", "caution.unconfirmed_data"]
+    assert bay.links().beyond_lines_nm == (421.0,)
+    # No depth of ours is right there, so a measured one is not refused.
+    text = bay.to_toml().replace(
+        "value = 6.0, standard_error = 0.06", "value = 9.0, standard_error = 0.06"
+    )
+    other = fl.Apparatus.from_toml(text)
+    (caution,) = [c for c in other.cautions if c.code == "caution.depth_disagrees"]
+    assert "the table lacks lines" in caution.text
+
+
+def test_links_that_cannot_be_used_are_a_caution() -> None:
+    bay = fl.Apparatus.load(BAY).replace({"beams.raman_b.polarisation_deg": 90.0})
+    (caution,) = [c for c in bay.links().cautions if c.code == "caution.link_forbidden"]
+    assert "9/2,-9/2 -> 9/2,-7/2" in caution.text
+
+
+def test_what_is_assumed_is_told() -> None:
+    text = Path(BAY).read_text(encoding="utf-8")
+    assert fl.Apparatus.from_toml(text).links().assumed == ()
+    plain = text.replace("{ value = 6.0, standard_error = 0.06 }", "6.0")
+    plain = "\n".join(line for line in plain.splitlines() if not line.startswith("noise_rms_gauss"))
+    report = fl.Apparatus.from_toml(plain).links()
+    assert set(report.assumed) == {"lattice.depth_er.standard_error", "field.noise_rms_gauss"}
+    assert report.table().count("(common practice)") == 2
+
+
+def test_reports_must_make_sense() -> None:
+    report = fl.Apparatus.load(BAY).links()
+    for changes in ({"depth_er": -3.0}, {"field_rms_gauss": -5.0}):
+        with pytest.raises(fl.InputError):
+            fl.LightReport.from_json(json.dumps(json.loads(report.to_json()) | changes))
+
+
+def test_texts_that_begin_with_a_digit_are_shown_in_quotes() -> None:
+    done = run("check", str(BAY), "--target", "3/8", "--set", "cloud.atom=87Rb")
+    assert done.returncode == 2
+    assert "'cloud.atom=\"87Rb\"'" in done.stderr

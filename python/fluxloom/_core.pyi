@@ -703,6 +703,8 @@ class LightReport(_Document["LightReport"]):
     scattering_per_s: Final[tuple[LegReport, ...]]
     remarks: Final[tuple[str, ...]]
     unconfirmed_data: Final[tuple[str, ...]]
+    beyond_lines_nm: Final[tuple[float, ...]]
+    assumed: Final[tuple[str, ...]]
     cautions: Final[tuple[Caution, ...]]
     def table(self) -> str: ...
 

@@ -294,7 +294,8 @@ def setting(text: str) -> tuple[str, Plain]:
         if value[:1] in tuple("+-.0123456789[{\"'"):
             raise fl.InputError(
                 f"--set {path.strip()}={value} cannot be read ({problem}): write numbers as 769.0, "
-                "lists as [766.0, 775.0], tables as {value = 6.0, standard_error = 0.05}",
+                "lists as [766.0, 775.0], tables as {value = 6.0, standard_error = 0.05}, and "
+                f"texts that begin with a digit in double quotes, '{path.strip()}=\"87Rb\"'",
                 "command.bad_set",
             ) from None
         read = {"value": {"True": True, "False": False}.get(value, value)}

@@ -49,7 +49,7 @@ impl PyLightReport {
     }
 
     /// Rms of the bias field: noise, mains, drift and the part in proportion to
-    /// the field, as far as stated, added in squares.
+    /// the field, stated or common practice, added in squares.
     #[getter]
     fn field_rms_gauss(&self) -> f64 {
         self.inner.field_rms_gauss
@@ -74,6 +74,19 @@ impl PyLightReport {
     #[getter]
     fn remarks<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
         PyTuple::new(py, &self.inner.remarks)
+    }
+
+    /// Wavelengths of beams to which lines that the table does not have are near.
+    #[getter]
+    fn beyond_lines_nm<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
+        PyTuple::new(py, &self.inner.beyond_lines_nm)
+    }
+
+    /// Paths of numbers that the report rests on by common practice, because the
+    /// file does not state them.
+    #[getter]
+    fn assumed<'py>(&self, py: Python<'py>) -> PyResult<Bound<'py, PyTuple>> {
+        PyTuple::new(py, &self.inner.assumed)
     }
 
     /// Numbers of the atom behind all this that no source confirms.

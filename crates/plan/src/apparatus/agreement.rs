@@ -5,7 +5,9 @@
 //! P/(w1 w2) for two. Its standard error comes from those of powers, waists and r,
 //! as far as the file states them; together with that of the stated depth (stated,
 //! or common practice) it is what a disagreement is measured by. The stated depth
-//! is the one that is used.
+//! is the one that is used. Where the table lacks what the computed depth needs
+//! (the polarisability of all other lines, or lines near the light), a
+//! disagreement is told and never refused.
 
 use fluxloom_core::atom::State;
 use fluxloom_core::lattice::{lattice_depth_er, lattice_power_mw};
@@ -22,6 +24,9 @@ const TOLD: f64 = 1.0;
 /// One by more than this is a fault.
 const REFUSED: f64 = 3.0;
 
+/// Relative standard error of a depth that is stated as exact.
+const EXACT: f64 = 1e-3;
+
 /// Depth as stated and as the beams make it.
 #[derive(Debug, Clone)]
 pub(crate) struct Agreement {
@@ -29,6 +34,9 @@ pub(crate) struct Agreement {
     pub state: State,
     pub stated_er: f64,
     pub computed_er: f64,
+    /// Whether the table has what the computed depth needs: the polarisability of
+    /// all lines, and those near the light.
+    is_tabulated: bool,
     /// Standard errors of both depths together.
     pub error_er: f64,
     /// Powers of the beams that make the lattice: path, today, and what the
@@ -66,12 +74,21 @@ impl Agreement {
     /// What a user is told of depths that differ, but may.
     pub(crate) fn caution(&self) -> Option<String> {
         (self.distance() > TOLD).then(|| {
-            format!("{}: the stated depth is used; measure it anew, or the power", self.told())
+            let table = if self.is_tabulated {
+                ""
+            } else {
+                "; the table lacks lines that matter here, so the computed one may be what is wrong"
+            };
+            format!(
+                "{}: the stated depth is used; measure it anew, or the power{table}",
+                self.told()
+            )
         })
     }
 
+    /// What a file is refused for; not where the table itself may be what is wrong.
     fn fault(&self) -> Option<String> {
-        if self.distance() <= REFUSED {
+        if self.distance() <= REFUSED || !self.is_tabulated {
             return None;
         }
         let needed: Vec<String> = self
@@ -127,10 +144,16 @@ impl Apparatus {
         let computed_er = self.depth_from_power_er().ok()?;
         let stated_er = self.number(DEPTH).ok()?;
         let (stated_error_er, _) = self.standard_error(DEPTH).ok()??;
+        // A number that is called exact is not better known than this.
+        let stated_error_er = stated_error_er.max(EXACT * stated_er);
         let error_er = stated_error_er.hypot(computed_er * self.relative_error()?);
         let state = self.depth_state().ok()?;
         let powers = self.needed_powers(state, (stated_er, computed_er))?;
-        Some(Agreement { state, stated_er, computed_er, error_er, powers })
+        let atom = self.atom().ok()?;
+        let bluest = self.lattice_beams().ok()?.map(|beam| beam.wavelength_nm());
+        let is_tabulated =
+            atom.has_residual() && !bluest.iter().any(|nm| atom.is_beyond_lines(*nm));
+        Some(Agreement { state, stated_er, computed_er, is_tabulated, error_er, powers })
     }
 
     /// Powers today, and those that the stated depth takes.

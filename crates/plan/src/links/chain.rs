@@ -15,27 +15,25 @@ pub(super) struct Chain {
 
 impl Chain {
     /// The chain within the F of `start`: upwards in m from the lower half and
-    /// the middle, downwards from the upper half.
+    /// the middle, downwards from the upper half, and to the other side where
+    /// that ends too soon.
     pub(super) fn from(atom: &Atom, start: State, legs: Legs) -> Self {
         let upwards = start.twice_m() <= 0;
         let same_f = atom.manifold().states.iter().filter(|s| s.twice_f() == start.twice_f());
-        let mut states: Vec<State> = same_f
-            .copied()
-            .filter(|state| {
-                let step = state.twice_m() - start.twice_m();
-                if upwards { step >= 0 } else { step <= 0 }
-            })
-            .collect();
-        states.sort_by_key(|state| (state.twice_m() - start.twice_m()).abs());
-        let there = states.len();
+        let mut all: Vec<State> = same_f.copied().collect();
+        all.sort_by_key(|state| if upwards { state.twice_m() } else { -state.twice_m() });
         let wanted = usize::try_from(legs.count.unwrap_or(MOST)).unwrap_or(usize::MAX);
-        states.truncate(wanted);
-        let is_short = legs.count.is_some() && there < wanted;
+        let here = all.iter().position(|state| *state == start).unwrap_or_default();
+        let end = here.saturating_add(wanted).min(all.len());
+        let begin = end.saturating_sub(wanted).min(here);
+        let states: Vec<State> = all.get(begin..end).unwrap_or_default().to_vec();
+        let is_short = legs.count.is_some() && states.len() < wanted;
         let remark = is_short.then(|| {
+            let closing = if legs.closed { ", without a link that closes them" } else { "" };
             format!(
-                "{wanted} legs asked for, but F = {} has {there} from {start} {}: these are shown",
+                "{wanted} legs asked for, but F = {} has {}: these are shown{closing}",
                 halves_text(start.twice_f()),
-                if upwards { "upwards" } else { "downwards" }
+                states.len()
             )
         });
         let mut links: Vec<(State, State)> =
@@ -67,7 +65,11 @@ mod tests {
         assert_eq!(text(&chain("9/2,-9/2", None, false)), "9/2,-9/2 9/2,-7/2 9/2,-5/2 9/2,-3/2");
         assert_eq!(text(&chain("7/2,1/2", Some(2), false)), "7/2,1/2 7/2,-1/2");
         assert_eq!(text(&chain("1,-1", None, false)), "1,-1 1,0 1,1");
-        assert_eq!(text(&chain("1,0", None, false)), "1,0 1,1");
+        // Where one side ends, the other goes on.
+        assert_eq!(text(&chain("1,0", None, false)), "1,-1 1,0 1,1");
+        assert_eq!(text(&chain("1,0", Some(2), false)), "1,0 1,1");
+        assert_eq!(text(&chain("9/2,7/2", Some(9), false)).split(' ').next(), Some("9/2,7/2"));
+        assert_eq!(chain("9/2,7/2", Some(10), false).legs.len(), 10);
         assert_eq!(text(&chain("2,2", Some(1), false)), "2,2");
         assert_eq!(chain("2,2", Some(1), true).links.len(), 0);
     }
@@ -83,6 +85,6 @@ mod tests {
         assert_eq!(chain("1,-1", Some(2), true).links.len(), 1);
         let long = chain("1,-1", Some(5), true);
         assert_eq!((long.legs.len(), long.links.len()), (3, 2));
-        assert!(long.remark.unwrap().contains("F = 1 has 3 from 1,-1 upwards"));
+        assert!(long.remark.unwrap().contains("F = 1 has 3: these are shown, without"));
     }
 }

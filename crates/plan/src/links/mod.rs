@@ -15,20 +15,18 @@
 //! remark; nothing else suffers from it.
 
 mod chain;
+mod report;
 mod table;
-
-use std::borrow::Cow;
 
 use fluxloom_core::atom::{GroundLevels, State};
 use fluxloom_core::lattice::lattice_scattering_per_s;
 use fluxloom_core::light::{Beam, Bias, Scattering};
-use fluxloom_core::{Atom, Document, Lattice, RamanPair, limits};
-use serde::{Deserialize, Serialize};
+use fluxloom_core::{Atom, Lattice, RamanPair, limits};
 
 use crate::apparatus::{Apparatus, Origin};
-use crate::cautions::Caution;
 use crate::error::Error;
 use chain::Chain;
+pub use report::{LegScattering, LightReport, Link, Rate};
 
 /// Which states are looked at.
 #[derive(Debug, Clone, Copy, Default, PartialEq, Eq)]
@@ -41,118 +39,6 @@ pub struct Legs {
 
 /// Legs that are looked at where no number is asked for.
 pub const MOST: u32 = 4;
-
-/// A link between two legs.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct Link {
-    /// The leg it starts from.
-    #[serde(with = "as_text")]
-    pub from: State,
-    /// The leg it leads to.
-    #[serde(with = "as_text")]
-    pub to: State,
-    /// Energy of the second state above the first over h, in the bias field.
-    pub splitting_hz: f64,
-    /// Size of the Rabi frequency over 2 pi of free atoms; none without Raman light.
-    pub rabi_hz: Option<f64>,
-    /// The same of atoms in the lattice.
-    pub effective_rabi_hz: Option<f64>,
-    /// Whether the coupling is too weak to be used.
-    pub forbidden: bool,
-    /// Which part of the light drives it, and how well.
-    pub rule: Option<String>,
-    /// For a coupling that cannot be used: what would drive it better.
-    pub alternatives: Vec<String>,
-    /// Change of the splitting with the field.
-    pub field_hz_per_gauss: f64,
-    /// Rms of the splitting that the noise of the field makes.
-    pub field_rms_hz: f64,
-}
-
-/// Photons that an atom in a state scatters in one kind of light.
-#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct Rate {
-    /// All of them, per second.
-    pub total: f64,
-    /// Those that change the state, per second.
-    pub changing: f64,
-}
-
-/// Scattering of a leg.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct LegScattering {
-    /// The leg.
-    #[serde(with = "as_text")]
-    pub state: State,
-    /// In both Raman beams; none without their light.
-    pub raman_beams: Option<Rate>,
-    /// In the light of the lattice, on its sites; none without it.
-    pub lattice_beams: Option<Rate>,
-}
-
-/// What the light of an apparatus does.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[serde(deny_unknown_fields)]
-pub struct LightReport {
-    /// Depth that the stated power makes, in lattice recoils; none without the
-    /// light of the lattice.
-    pub depth_from_power_er: Option<f64>,
-    /// Depth as stated: the one that is used.
-    pub depth_er: f64,
-    /// Its standard error, stated or common practice.
-    pub depth_standard_error_er: Option<f64>,
-    /// The bias field, if it is stated; else all is computed without a field.
-    pub field_gauss: Option<f64>,
-    /// Rms of the field, all its stated parts together.
-    pub field_rms_gauss: f64,
-    /// Links between legs that follow each other.
-    pub links: Vec<Link>,
-    /// Scattering of each leg.
-    pub scattering_per_s: Vec<LegScattering>,
-    /// What was left out, and why.
-    pub remarks: Vec<String>,
-    /// Numbers of the atom behind all this that no source confirms.
-    pub unconfirmed_data: Vec<String>,
-}
-
-impl Document for LightReport {
-    const FORMAT: &'static str = "fluxloom-light-report";
-}
-
-impl Document for Link {
-    const FORMAT: &'static str = "fluxloom-link";
-}
-
-impl Document for LegScattering {
-    const FORMAT: &'static str = "fluxloom-leg-scattering";
-}
-
-impl LightReport {
-    /// The numbers as aligned lines for a terminal.
-    #[must_use]
-    pub fn table(&self) -> String {
-        table::lines(self)
-    }
-
-    /// What to think about before these numbers are used.
-    #[must_use]
-    pub fn cautions(&self) -> Vec<Caution> {
-        if self.unconfirmed_data.is_empty() {
-            return Vec::new();
-        }
-        vec![Caution {
-            code: Cow::Borrowed("caution.unconfirmed_data"),
-            text: format!(
-                "levels, couplings, depth and scattering rest on numbers of the atomic table that \
-                 no source confirms: {}; compare them with your own",
-                self.unconfirmed_data.join(", ")
-            ),
-        }]
-    }
-}
 
 /// Everything that a report is made from.
 struct Bench {
@@ -197,12 +83,14 @@ impl Apparatus {
             depth_from_power_er: depth,
             depth_er: self.number("lattice.depth_er")?,
             depth_standard_error_er: self.standard_error("lattice.depth_er")?.map(|(size, _)| size),
+            assumed: self.assumed()?,
             field_gauss,
             field_rms_gauss: self.field_rms_gauss(),
             links: Vec::new(),
             scattering_per_s: Vec::new(),
             remarks,
             unconfirmed_data: unconfirmed(&bench.atom),
+            beyond_lines_nm: bench.beyond_lines_nm(),
         };
         if self.origin("cloud.start")? == Origin::NotStated {
             report.remarks.push(
@@ -216,6 +104,18 @@ impl Apparatus {
         report.remarks.extend(chain.remark);
         bench.fill(&chain.legs, &chain.links, &mut report)?;
         Ok(Some(report))
+    }
+
+    /// Paths of numbers that the report rests on and the file does not state.
+    fn assumed(&self) -> Result<Vec<String>, Error> {
+        let mut assumed = Vec::new();
+        if self.number("lattice.depth_er.standard_error").is_err() {
+            assumed.push("lattice.depth_er.standard_error".to_owned());
+        }
+        if self.origin("field.noise_rms_gauss")? != Origin::Stated {
+            assumed.push("field.noise_rms_gauss".to_owned());
+        }
+        Ok(assumed)
     }
 
     /// Rms of the bias field, all its parts together.
@@ -261,7 +161,37 @@ impl Apparatus {
     }
 }
 
+/// Tones of one laser are moved apart by modulators as far as this (common practice).
+const TONES_REACH_HZ: f64 = 20e9;
+
 impl Bench {
+    /// Wavelengths of beams that feel lines which the table does not have.
+    fn beyond_lines_nm(&self) -> Vec<f64> {
+        let raman = self.raman.and_then(|pair| pair.given_beams());
+        let beams = [self.lattice_beams, raman].into_iter().flatten().flatten();
+        let mut found: Vec<f64> = Vec::new();
+        for nm in beams.map(|beam| beam.wavelength_nm()) {
+            if self.atom.is_beyond_lines(nm) && !found.contains(&nm) {
+                found.push(nm);
+            }
+        }
+        found
+    }
+
+    /// Why the Raman beams cannot drive a link, whatever their strength.
+    fn too_far_apart(&self, splitting_hz: f64) -> Option<String> {
+        let [absorb, emit] = self.raman?.given_beams()?;
+        let apart_hz = absorb.frequency_hz() - emit.frequency_hz();
+        let missing_hz = (apart_hz.abs() - splitting_hz.abs()).abs();
+        (missing_hz > TONES_REACH_HZ).then(|| {
+            format!(
+                "couplings left out: the Raman beams differ by {:.1} GHz, which no modulator \
+                 takes to the splittings of the links: no two photons of theirs make up a link",
+                apart_hz.abs() * 1e-9
+            )
+        })
+    }
+
     fn fill(
         &self,
         legs: &[State],
@@ -309,8 +239,12 @@ impl Bench {
         report: &mut LightReport,
     ) -> Result<Link, Error> {
         let slope = levels.moment_hz_per_gauss(to)? - levels.moment_hz_per_gauss(from)?;
+        let splitting_hz = levels.splitting_hz(from, to)?;
+        let too_far = self.too_far_apart(splitting_hz);
+        report.remarks.extend(too_far.clone());
         let coupling = self
             .raman
+            .filter(|_| too_far.is_none())
             .map(|pair| pair.coupling(&self.atom, (from, to), &self.bias, Some(&self.lattice)))
             .and_then(|found| {
                 found
@@ -320,7 +254,7 @@ impl Bench {
         Ok(Link {
             from,
             to,
-            splitting_hz: levels.splitting_hz(from, to)?,
+            splitting_hz,
             rabi_hz: coupling.as_ref().map(|found| found.rabi_hz.norm()),
             effective_rabi_hz: coupling.as_ref().map(|found| found.effective_rabi_hz.norm()),
             forbidden: coupling.as_ref().is_some_and(fluxloom_core::light::Coupling::is_forbidden),
@@ -349,25 +283,4 @@ fn unconfirmed(atom: &Atom) -> Vec<String> {
         names.push("residual_polarisability_au (missing)".to_owned());
     }
     names
-}
-
-/// States in documents as people write them.
-mod as_text {
-    use fluxloom_core::atom::State;
-    use serde::de::Error as _;
-    use serde::{Deserialize, Deserializer, Serializer};
-
-    pub(super) fn serialize<S: Serializer>(
-        state: &State,
-        serializer: S,
-    ) -> Result<S::Ok, S::Error> {
-        serializer.collect_str(state)
-    }
-
-    pub(super) fn deserialize<'de, D: Deserializer<'de>>(
-        deserializer: D,
-    ) -> Result<State, D::Error> {
-        let text = String::deserialize(deserializer)?;
-        text.parse().map_err(D::Error::custom)
-    }
 }

@@ -2,7 +2,7 @@
 
 use std::fmt::Write as _;
 
-use super::{LightReport, Link, Rate};
+use super::report::{LightReport, Link, Rate};
 
 /// All lines of a report.
 pub(super) fn lines(report: &LightReport) -> String {
@@ -10,7 +10,12 @@ pub(super) fn lines(report: &LightReport) -> String {
     let mut head = |name: &str, value: &str| {
         let _ = writeln!(text, "  {name:<17} {value}");
     };
+    let practice = |path: &str| {
+        let assumed = report.assumed.iter().any(|found| found == path);
+        if assumed { " (common practice)" } else { "" }
+    };
     if let Some(made_er) = report.depth_from_power_er {
+        let practice = practice("lattice.depth_er.standard_error");
         let stated = report.depth_standard_error_er.map_or_else(
             || format!("{}", report.depth_er),
             |error| {
@@ -20,11 +25,12 @@ pub(super) fn lines(report: &LightReport) -> String {
                 format!("{:.decimals$} +- {error}", report.depth_er)
             },
         );
-        head("depth from power", &format!("{made_er:.3} E_R, stated {stated} E_R"));
+        head("depth from power", &format!("{made_er:.3} E_R, stated {stated} E_R{practice}"));
     }
     if !report.links.is_empty() {
         let at = report.field_gauss.map_or_else(|| "none".to_owned(), |field| format!("{field} G"));
-        head("field", &format!("{at}, noise {} rms", scaled(report.field_rms_gauss, &GAUSS)));
+        let noise = scaled(report.field_rms_gauss, &GAUSS);
+        head("field", &format!("{at}, noise {noise} rms{}", practice("field.noise_rms_gauss")));
     }
     if report.links.iter().any(|link| link.rabi_hz.is_some()) {
         head("couplings", "of both Raman beams with all their power, one tone each");
@@ -66,7 +72,7 @@ fn link(link: &Link) -> Vec<String> {
         (Some(free), Some(held)) => {
             format!("coupling {}, in the lattice {}", scaled(free, &HERTZ), scaled(held, &HERTZ))
         }
-        _ => "no Raman light".to_owned(),
+        _ => "no coupling".to_owned(),
     };
     let slope = link.field_hz_per_gauss;
     let slope = if slope.abs() < 1e3 {

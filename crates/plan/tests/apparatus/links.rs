@@ -99,7 +99,7 @@ fn what_is_not_stated_is_left_out_and_told() {
     assert!(found.scattering_per_s[0].raman_beams.is_none());
     assert!(found.scattering_per_s[0].lattice_beams.is_some());
     assert!(found.remarks[0].contains("beams.raman_b states no power_mw"), "{:?}", found.remarks);
-    assert!(found.table().contains("no Raman light"));
+    assert!(found.table().contains("no coupling"));
     let dark = Apparatus::from_toml(&bay_with("waist_um = 120.0 ", "# ")).unwrap();
     let found = report(&dark, None);
     assert!(found.depth_from_power_er.is_none() && found.links[0].rabi_hz.is_some());
