@@ -20,11 +20,41 @@ pub(super) struct Balance {
 }
 
 impl Balance {
+    /// One sentence for a number that moved twice: what happened between never stood
+    /// anywhere. A number that came back is not told at all.
+    pub(super) fn merge_steps(&mut self, before: &Node, after: &Node) {
+        let mut merged: Vec<Move> = Vec::new();
+        for step in std::mem::take(&mut self.moves) {
+            let Some(earlier) = merged.iter_mut().find(|earlier| earlier.path == step.path) else {
+                merged.push(step);
+                continue;
+            };
+            let cause = |step: &Move| {
+                step.sentence.split_once(": ").map_or("", |(cause, _)| cause).to_owned()
+            };
+            let (old, new) = (number(before, &step.path), number(after, &step.path));
+            let value = |found: Option<f64>| found.map_or_else(|| "none".to_owned(), short);
+            let (first, second) = (cause(earlier), cause(&step));
+            let causes = if second.starts_with(&first) { second } else { first + ", " + &second };
+            earlier.sentence =
+                format!("{causes}: {} moves, {} -> {}", step.path, value(old), value(new));
+        }
+        let moved = |step: &Move| match (number(before, &step.path), number(after, &step.path)) {
+            (Some(old), Some(new)) => (new - old).abs() > SAME * old.abs(),
+            _ => true,
+        };
+        merged.retain(moved);
+        self.moves = merged;
+    }
+
     /// Everything the user is told, a sentence each.
     pub(super) fn sentences(self) -> Vec<String> {
         self.moves.into_iter().map(|step| step.sentence).chain(self.remark).collect()
     }
 }
+
+/// Numbers that differ by less than this part are one.
+const SAME: f64 = 1e-9;
 
 /// A number that moves along.
 pub(super) struct Move {

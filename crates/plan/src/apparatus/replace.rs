@@ -68,6 +68,7 @@ impl Apparatus {
             new = self.reread(&document);
         }
         balance.moves.extend(retuned.moves);
+        balance.merge_steps(&self.tree, &new.tree);
         check::check(&new.tree, &mut faults);
         agreement::check(&new, &mut faults);
         // The user set one number and the fault is at the other: name both.

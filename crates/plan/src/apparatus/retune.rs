@@ -44,7 +44,10 @@ pub(super) fn retune(before: &Apparatus, after: &Apparatus, touched: &[Vec<Strin
     let power_is_given = powers.iter().any(|at| is_given(before, after, at, touched));
     let depth_keys = path::split(DEPTH);
     let depth_is_given = touched.iter().any(|change| path::overlap(change, &depth_keys));
-    let causes = format!("{} changed", path::listed(&causes));
+    let mut causes = format!("{} changed", path::listed(&causes));
+    if depth_is_given && old_er != new_er && !power_is_given {
+        causes = format!("{DEPTH} {} -> {}, {causes}", short(old_er), short(new_er));
+    }
     known(match (power_is_given, depth_is_given) {
         (true, true) => Vec::new(),
         (true, false) => vec![Move {
