@@ -3,9 +3,13 @@
 import json
 import math
 
+import mpmath
 import numpy as np
 import pytest
+import sympy
 from independent.frames import rotation
+from scipy import constants
+from sympy.physics.wigner import wigner_6j
 
 import fluxloom as fl
 
@@ -194,3 +198,51 @@ def test_arguments_that_are_no_atom_or_flag() -> None:
         fl.RamanPair.from_beams(absorb=light, emit=light).stray_couplings(
             atom, "9/2,1/2", "9/2,3/2", field_gauss=1.0, reflection=1.5
         )
+
+
+@pytest.mark.parametrize(("name", "f"), [("40K", 4.5), ("87Rb", 2.0), ("133Cs", 3.0)])
+def test_the_tensor_part_keeps_its_digits(name: str, f: float) -> None:
+    # source: Le Kien, Schneeweiss, Rauschenbeutel, Eur. Phys. J. D 67, 92 (2013) (from memory),
+    # with exact 6j symbols of sympy and 40 digits of mpmath; terms cancel to a ten-millionth.
+    atom = fl.Atom(name)
+    data, i, j = (
+        numbers(atom),
+        sympy.Rational(round(2 * atom.nuclear_spin), 2),
+        sympy.Rational(1, 2),
+    )
+    spin = sympy.Rational(round(2 * f), 2)
+    with mpmath.workdps(40):
+        nu = mpmath.mpf(299792458) / (mpmath.mpf(1064) * mpmath.mpf(10) ** -9)
+
+        def shift(jj: sympy.Rational, ff: sympy.Rational, a: float, b: float) -> mpmath.mpf:
+            k = ff * (ff + 1) - i * (i + 1) - jj * (jj + 1)
+            found = mpmath.mpf(a) * _mp(k) / 2
+            if b:
+                top = sympy.Rational(3, 2) * k * (k + 1) - 2 * i * (i + 1) * jj * (jj + 1)
+                found += mpmath.mpf(b) * _mp(top / (2 * i * (2 * i - 1) * 2 * jj * (2 * jj - 1)))
+            return found
+
+        total = mpmath.mpf(0)
+        ground = shift(j, spin, data["hyperfine_a_hz"], 0.0)
+        for line, jj in (("D1", sympy.Rational(1, 2)), ("D2", sympy.Rational(3, 2))):
+            for twice in range(round(2 * abs(i - jj)), round(2 * (i + jj)) + 1, 2):
+                ff = sympy.Rational(twice, 2)
+                if abs(ff - spin) > 1:
+                    continue
+                reduced = (2 * spin + 1) * (2 * ff + 1) * wigner_6j(j, spin, i, ff, jj, 1) ** 2
+                weight = (-1) ** int(spin + ff + 1) * wigner_6j(1, 2, 1, spin, ff, spin) * reduced
+                a, b = data[f"{line}.hyperfine_a_hz"], data.get(f"{line}.hyperfine_b_hz", 0.0)
+                at = mpmath.mpf(data[f"{line}.frequency_hz"])
+                at += shift(jj, ff, a, b if jj > 1 else 0.0) - ground
+                strength = mpmath.mpf(data[f"{line}.dipole_au"]) ** 2
+                total += strength * _mp(sympy.nsimplify(weight)) * (1 / (at - nu) + 1 / (at + nu))
+        factor = 2 * spin * (2 * spin - 1) / (3 * (spin + 1) * (2 * spin + 1) * (2 * spin + 3))
+        # Atomic units: the Hartree energy over h.
+        hartree = mpmath.mpf(constants.physical_constants["Hartree energy"][0]) / constants.h
+        expected = -_mp(sympy.sqrt(factor * 5)) * total * hartree
+        found = atom.polarisability_au(1064.0, f).tensor
+        assert found == pytest.approx(float(expected), rel=1e-12, abs=0)
+
+
+def _mp(number: sympy.Expr) -> mpmath.mpf:
+    return mpmath.mpf(str(sympy.N(number, 45)))

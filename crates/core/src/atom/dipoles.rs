@@ -29,7 +29,22 @@ pub(crate) struct LineDipoles {
     /// Twice J' of the excited state.
     pub twice_j: i32,
     pub levels: Vec<LevelDipoles>,
+    /// Reduced two-dipole elements by rank, summed over the levels: what is left
+    /// of them without excited hyperfine structure, at [to, from].
+    sums: Vec<[f64; RANKS]>,
+    ground_levels: usize,
 }
+
+impl LineDipoles {
+    /// Scalar, vector and tensor parts of all levels together; zero exactly
+    /// where the spins make them cancel.
+    pub fn sums(&self, to: usize, from: usize) -> [f64; RANKS] {
+        self.sums.get(to * self.ground_levels + from).copied().unwrap_or_default()
+    }
+}
+
+/// Sums below this part of their terms are zero but for rounding.
+const CANCELLED: f64 = 1e-12;
 
 /// One excited hyperfine level.
 #[derive(Debug, Clone, PartialEq)]
@@ -117,7 +132,25 @@ fn line(manifold: &Manifold, twice_j: i32) -> LineDipoles {
             .collect();
         LevelDipoles { twice_f, recoupled, ground_levels: grounds.len() }
     });
-    LineDipoles { twice_j, levels: levels.collect() }
+    let levels: Vec<LevelDipoles> = levels.collect();
+    let ground_levels = manifold.twice_f.len();
+    let mut sums = vec![[0.0; RANKS]; ground_levels * ground_levels];
+    for (place, sum) in sums.iter_mut().enumerate() {
+        let terms = levels.iter().filter_map(|level| level.recoupled.get(place));
+        let mut sizes = [0.0; RANKS];
+        for term in terms {
+            for ((total, size), part) in sum.iter_mut().zip(&mut sizes).zip(term) {
+                *total += part;
+                *size += part.abs();
+            }
+        }
+        for (total, size) in sum.iter_mut().zip(sizes) {
+            if total.abs() < CANCELLED * size {
+                *total = 0.0;
+            }
+        }
+    }
+    LineDipoles { twice_j, levels, sums, ground_levels }
 }
 
 /// `<F||d||F'>` over `<J||d||J'>`.

@@ -47,6 +47,7 @@ pub(crate) mod shift;
 mod stray;
 mod tune_out;
 mod two_photon;
+mod ways;
 
 pub use beam::{Beam, BeamInput};
 pub use bias::Bias;

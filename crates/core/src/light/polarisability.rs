@@ -13,7 +13,7 @@
 
 use serde::{Deserialize, Serialize};
 
-use super::response::{Transition, energy_hz, reduced, reduced_by, transitions};
+use super::ways::{LineWays, energy_hz, line_ways, reduced, reduced_by};
 use crate::atom::{Structure, Uncertain, standard_errors};
 use crate::constants::SPEED_OF_LIGHT_M_PER_S;
 use crate::documents::Document;
@@ -112,9 +112,9 @@ impl Atom {
         let structure = self.structure();
         let twice_f = structure.manifold().twice_f.get(level).copied().unwrap_or_default();
         let at_rest = energy_hz(&structure, level);
-        let known: Vec<Transition<'_>> = transitions(&structure, (level, level), at_rest).collect();
+        let known: Vec<LineWays<'_>> = line_ways(&structure, (level, level), at_rest).collect();
         let one = |nm: &f64| {
-            let ranks = reduced_by(&structure, known.iter().copied(), frequency_of(*nm)?)?;
+            let ranks = reduced_by(&structure, &known, frequency_of(*nm)?)?;
             Ok(Polarisability::from_ranks(twice_f, ranks, structure.residual_au))
         };
         wavelengths_nm.iter().map(one).collect()

@@ -8,7 +8,7 @@
 use serde::{Deserialize, Serialize};
 
 use super::bias::Bias;
-use super::response::{wavelength_nm, windows};
+use super::ways::{wavelength_nm, windows};
 use super::{Beam, RamanPair};
 use crate::Atom;
 use crate::atom::State;

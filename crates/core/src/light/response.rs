@@ -22,15 +22,13 @@
 use num_complex::Complex64;
 
 use super::products::{ByRank, Products};
-use crate::atom::{LineStructure, Structure};
+use super::ways::{energy_hz, reduced_about};
+use crate::atom::Structure;
 use crate::constants::{
     BOHR_RADIUS_M, ELEMENTARY_CHARGE_C, HARTREE_J, PLANCK_J_S, SPEED_OF_LIGHT_M_PER_S,
     VACUUM_PERMITTIVITY_F_PER_M,
 };
-use crate::error::{Error, RESONANCE_LINEWIDTHS};
-
-/// Hartree energy over h, Hz.
-const HARTREE_HZ: f64 = HARTREE_J / PLANCK_J_S;
+use crate::error::Error;
 
 /// Atomic unit of polarisability, C^2 m^2/J.
 pub(crate) const POLARISABILITY_UNIT_SI: f64 =
@@ -39,145 +37,6 @@ pub(crate) const POLARISABILITY_UNIT_SI: f64 =
 /// -V/h in Hz of 1 a.u. in light of 1 W/m^2: |E|^2/4 = I/(2 eps0 c).
 pub(crate) const HZ_PER_AU_INTENSITY: f64 = POLARISABILITY_UNIT_SI
     / (2.0 * VACUUM_PERMITTIVITY_F_PER_M * SPEED_OF_LIGHT_M_PER_S * PLANCK_J_S);
-
-/// Vacuum wavelength of a frequency, nm.
-pub(crate) fn wavelength_nm(frequency_hz: f64) -> f64 {
-    SPEED_OF_LIGHT_M_PER_S / frequency_hz * 1e9
-}
-
-/// Zero-field energy of a ground level, Hz.
-pub(crate) fn energy_hz(structure: &Structure, level: usize) -> f64 {
-    let twice_f = structure.manifold().twice_f.get(level);
-    twice_f.map_or(0.0, |twice_f| structure.ground_hz(*twice_f))
-}
-
-/// One way from a ground level to another by an excited level.
-#[derive(Debug, Clone, Copy)]
-pub(crate) struct Transition<'a> {
-    line: &'a LineStructure,
-    /// Twice F' of the excited level.
-    twice_f: i32,
-    /// From the mean energy of the states that the light acts on, Hz.
-    frequency_hz: f64,
-    /// Nearer than this nothing is computed, Hz.
-    window_hz: f64,
-    /// By rank, a.u. of polarisability times Hz.
-    strengths: ByRank<f64>,
-}
-
-/// All ways from one ground level to another, with the mean energy of the states that
-/// the light acts on: what does not depend on the light.
-pub(crate) fn transitions(
-    structure: &Structure,
-    (to, from): (usize, usize),
-    mean_hz: f64,
-) -> impl Iterator<Item = Transition<'_>> {
-    let lines = structure.lines.iter().zip(&structure.dipoles.lines);
-    lines.flat_map(move |(line, dipoles)| {
-        let strength = line.dipole_au * line.dipole_au * HARTREE_HZ;
-        dipoles.levels.iter().filter_map(move |level| {
-            let weights = level.recoupled(to, from);
-            (weights != [0.0; 3]).then(|| Transition {
-                line,
-                twice_f: level.twice_f,
-                frequency_hz: line.frequency_hz + line.hyperfine.shift_hz(level.twice_f) - mean_hz,
-                window_hz: RESONANCE_LINEWIDTHS * line.linewidth_hz,
-                strengths: weights.map(|weight| strength * weight),
-            })
-        })
-    })
-}
-
-/// Reduced elements by rank from one ground level to another, for the optical
-/// frequency `frequency_hz`, atomic units.
-pub(crate) fn reduced(
-    structure: &Structure,
-    to: usize,
-    from: usize,
-    frequency_hz: f64,
-) -> Result<ByRank<f64>, Error> {
-    let mean_hz = 0.5 * (energy_hz(structure, to) + energy_hz(structure, from));
-    reduced_about(structure, (to, from), mean_hz, frequency_hz)
-}
-
-/// As [`reduced`], with the mean energy of the states that the light acts on.
-fn reduced_about(
-    structure: &Structure,
-    levels: (usize, usize),
-    mean_hz: f64,
-    frequency_hz: f64,
-) -> Result<ByRank<f64>, Error> {
-    reduced_by(structure, transitions(structure, levels, mean_hz), frequency_hz)
-}
-
-/// As [`reduced`] by way of transitions that are known already.
-pub(crate) fn reduced_by<'a>(
-    structure: &Structure,
-    transitions: impl IntoIterator<Item = Transition<'a>>,
-    frequency_hz: f64,
-) -> Result<ByRank<f64>, Error> {
-    let [mut scalar, mut vector, mut tensor] = [0.0; 3];
-    for way in transitions {
-        let detuning = frequency_hz - way.frequency_hz;
-        if detuning.abs() < way.window_hz {
-            let place = (way.frequency_hz, detuning);
-            return Err(on_resonance(structure, way.line, way.twice_f, place));
-        }
-        let (near, far) = (-1.0 / detuning, 1.0 / (way.frequency_hz + frequency_hz));
-        let [zero, one, two] = way.strengths;
-        scalar += zero * (near + far);
-        vector += one * (near - far);
-        tensor += two * (near + far);
-    }
-    Ok([scalar, vector, tensor])
-}
-
-fn on_resonance(
-    structure: &Structure,
-    line: &LineStructure,
-    twice_f: i32,
-    (transition_hz, detuning_hz): (f64, f64),
-) -> Error {
-    let window_hz = RESONANCE_LINEWIDTHS * line.linewidth_hz;
-    Error::OnResonance {
-        wavelength_nm: wavelength_nm(transition_hz + detuning_hz),
-        line: format!(
-            "the {} line of {} to F' = {} at {:.6} nm",
-            line.name,
-            structure.name,
-            crate::atom::halves_text(twice_f),
-            wavelength_nm(transition_hz)
-        ),
-        detuning_hz,
-        window_hz,
-        outside_nm: (
-            wavelength_nm(transition_hz + window_hz),
-            wavelength_nm(transition_hz - window_hz),
-        ),
-    }
-}
-
-/// Distance of light from the nearest line that a ground level absorbs on, Hz.
-pub(crate) fn nearest_line_hz(structure: &Structure, level: usize, frequency_hz: f64) -> f64 {
-    transitions(structure, (level, level), energy_hz(structure, level))
-        .map(|way| (frequency_hz - way.frequency_hz).abs())
-        .fold(f64::INFINITY, f64::min)
-}
-
-/// The refused windows for light from one ground level to another, Hz, ascending;
-/// lines count from the mean of both.
-pub(crate) fn windows(structure: &Structure, to: usize, from: usize) -> Vec<(f64, f64)> {
-    let mean_hz = 0.5 * (energy_hz(structure, to) + energy_hz(structure, from));
-    let mut windows: Vec<(f64, f64)> = transitions(structure, (to, from), mean_hz)
-        .map(|way| {
-            // A little wider than what is refused, so that rounding cannot matter.
-            let half = way.window_hz * (1.0 + 1e-6) + 1.0;
-            (way.frequency_hz - half, way.frequency_hz + half)
-        })
-        .collect();
-    windows.sort_by(|a, b| a.0.total_cmp(&b.0));
-    windows
-}
 
 /// The operator v between zero-field states, by rank.
 pub(crate) struct Operator<'a> {

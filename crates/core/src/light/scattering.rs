@@ -21,8 +21,9 @@ use serde::{Deserialize, Serialize};
 
 use super::Beam;
 use super::bias::Bias;
-use super::response::{Operator, POLARISABILITY_UNIT_SI, wavelength_nm};
+use super::response::{Operator, POLARISABILITY_UNIT_SI};
 use super::shift::{Illumination, excited_zeeman};
+use super::ways::wavelength_nm;
 use crate::Atom;
 use crate::atom::{Levels, State, Structure, Uncertain, standard_errors_of_all};
 use crate::constants::{REDUCED_PLANCK_J_S, SPEED_OF_LIGHT_M_PER_S, VACUUM_PERMITTIVITY_F_PER_M};

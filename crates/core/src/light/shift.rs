@@ -9,7 +9,8 @@ use num_complex::Complex64;
 
 use super::Beam;
 use super::bias::{Axes, Bias};
-use super::response::{HZ_PER_AU_INTENSITY, Operator, nearest_line_hz};
+use super::response::{HZ_PER_AU_INTENSITY, Operator};
+use super::ways::nearest_line_hz;
 use crate::Atom;
 use crate::atom::{Levels, State, Structure, Uncertain, standard_errors};
 use crate::error::Error;

@@ -6,7 +6,7 @@
 //! are not looked for.
 
 use super::polarisability::{Polarisability, frequency_of, polarisability};
-use super::response::{wavelength_nm, windows};
+use super::ways::{wavelength_nm, windows};
 use crate::Atom;
 use crate::atom::{State, Structure, Uncertain, halves_text, standard_errors};
 use crate::error::Error;

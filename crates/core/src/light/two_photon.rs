@@ -153,7 +153,7 @@ impl RamanPair {
         let splitting_hz = atom.ground_levels(bias.field_gauss)?.splitting_hz(a, b)?;
         let mean_hz = 0.5 * (absorb.frequency_hz() + emit.frequency_hz());
         let tuned = |beam: &super::Beam, by_hz: f64| {
-            beam.with_wavelength_nm(super::response::wavelength_nm(mean_hz + by_hz))
+            beam.with_wavelength_nm(super::ways::wavelength_nm(mean_hz + by_hz))
         };
         Self::from_beams(tuned(&absorb, 0.5 * splitting_hz)?, tuned(&emit, -0.5 * splitting_hz)?)
     }
