@@ -86,8 +86,7 @@ def test_a_weak_field_changes_little() -> None:
     # F = 1 a weak field mixes in.
     atom = fl.Atom("87Rb")
     ground = atom.ground_levels(0.0)
-    excited = 1.5 * numbers(atom)["D2.hyperfine_a_hz"]  # near F' = 2, within the window
-    on_line = resonance_nm(atom, "D2", ground.energy_hz(1, 0), excited * 0)
+    on_line = resonance_nm(atom, "D2", ground.energy_hz(1, 0), 0.0)
     light = beam((1, 0, 0), (0, 1, 0), on_line)
     at_rest = atom.light_shift_hz(light, 2, 0)
     for field in (1e-6, 1e-3, 0.1, 1.0):
@@ -99,6 +98,25 @@ def test_a_weak_field_changes_little() -> None:
     assert math.isfinite(found.standard_error)
     with pytest.raises(fl.InputError, match="linewidths"):
         atom.light_shift_hz(light, 1, 0)
+
+
+def test_a_line_of_other_states_is_no_matter() -> None:
+    # On the line of F = 1, gigahertz away from that of F = 2.
+    atom = fl.Atom("87Rb")
+    on_line = resonance_nm(atom, "D2", atom.ground_levels(0.0).energy_hz(1, 0), 0.0)
+    pair = fl.RamanPair.from_beams(
+        absorb=beam((0, 1, 0), (0, 0, 1), on_line), emit=beam((1, 0, 0), (0, 1, 0), on_line)
+    )
+    link = pair.coupling(atom, (2, 0), (2, 1), field_gauss=1.0)
+    assert link.rabi_hz == pair.rabi_hz(atom, (2, 0), (2, 1), field_gauss=1.0)
+    assert 0.1 < link.relative <= 1.0 and not link.forbidden
+    for ask in (
+        lambda: pair.coupling(atom, (1, 0), (1, 1), field_gauss=1.0),
+        lambda: pair.rabi_matrix_hz(atom, field_gauss=1.0),
+    ):
+        with pytest.raises(fl.InputError) as caught:
+            ask()
+        assert caught.value.code == "light.on_resonance"
 
 
 def test_near_an_uncertain_line_nothing_is_known() -> None:

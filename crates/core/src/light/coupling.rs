@@ -175,19 +175,25 @@ impl RamanPair {
     /// The largest coupling between two states with |Delta m| <= 1, or, where these
     /// beams make none, of all.
     pub(super) fn yardstick(&self, atom: &Atom, bias: &Bias) -> Result<Yardstick, Error> {
-        let matrix = self.rabi_matrix_hz(atom, bias)?;
         let states = &atom.manifold().states;
         let (mut usual, mut all) = (0.0_f64, 0.0_f64);
-        for ((to, from), element) in matrix.indexed_iter() {
+        self.each_rabi_hz(atom, bias, |(to, from), found| {
+            let size = match found {
+                Ok(rabi_hz) => rabi_hz.norm(),
+                // Light on a line of states that were not asked about.
+                Err(Error::OnResonance { .. }) => return Ok(()),
+                Err(other) => return Err(other),
+            };
             if let (Some(b), Some(a)) = (states.get(to), states.get(from))
                 && to != from
             {
-                all = all.max(element.norm());
+                all = all.max(size);
                 if (b.twice_m() - a.twice_m()).abs() <= 2 {
-                    usual = usual.max(element.norm());
+                    usual = usual.max(size);
                 }
             }
-        }
+            Ok(())
+        })?;
         let is_usual = usual > ROUNDING * all;
         Ok(Yardstick { largest_hz: if is_usual { usual } else { all }, is_usual })
     }

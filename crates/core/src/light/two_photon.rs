@@ -123,17 +123,38 @@ impl RamanPair {
     /// # Errors
     /// As [`RamanPair::rabi_hz`].
     pub fn rabi_matrix_hz(&self, atom: &Atom, bias: &Bias) -> Result<Array2<Complex64>, Error> {
+        let count = atom.manifold().states.len();
+        let mut matrix = Array2::zeros((count, count));
+        self.each_rabi_hz(atom, bias, |places, found| {
+            if let Some(element) = matrix.get_mut(places) {
+                *element = found?;
+            }
+            Ok(())
+        })?;
+        Ok(matrix)
+    }
+
+    /// Hands every Rabi frequency, or why there is none, to `take` with the places
+    /// of b and a.
+    pub(super) fn each_rabi_hz(
+        &self,
+        atom: &Atom,
+        bias: &Bias,
+        mut take: impl FnMut((usize, usize), Result<Complex64, Error>) -> Result<(), Error>,
+    ) -> Result<(), Error> {
         let light = Pair::new(self, bias)?;
         let structure = atom.structure();
         let levels = Levels::new(&structure, bias.field_gauss);
         let mut operator = light.operator(&structure);
         let count = structure.manifold().states.len();
-        let mut matrix = Array2::zeros((count, count));
-        for ((to, from), element) in matrix.indexed_iter_mut() {
-            let ranks = operator.between(levels.parts(to), levels.parts(from))?;
-            *element = ranks.iter().sum::<Complex64>() * (-2.0 * HZ_PER_AU_INTENSITY);
+        for to in 0..count {
+            for from in 0..count {
+                let ranks = operator.between(levels.parts(to), levels.parts(from));
+                let total = ranks.map(|ranks| ranks.iter().sum::<Complex64>());
+                take((to, from), total.map(|sum| sum * (-2.0 * HZ_PER_AU_INTENSITY)))?;
+            }
         }
-        Ok(matrix)
+        Ok(())
     }
 
     /// This pair with the tones that drive b <- a on resonance: their frequencies
